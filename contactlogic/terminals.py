@@ -13,7 +13,7 @@ from dataclasses import dataclass
 from contactlogic.job.model import LoadKind
 from contactlogic.network import Network, Pole
 
-__all__ = ["PoleMarks", "load_marks", "pole_marks", "wire_numbers", "RETURN"]
+__all__ = ["RETURN", "PoleMarks", "load_marks", "pole_marks", "wire_numbers"]
 
 RETURN = "return"
 """Key of the return rail in `wire_numbers` (it is no net of the contact network)."""

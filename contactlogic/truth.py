@@ -9,7 +9,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
-from functools import lru_cache
+from functools import cache
 
 __all__ = [
     "MAX_INPUTS",
@@ -33,7 +33,7 @@ def all_rows(n: int) -> int:
     return (1 << (1 << n)) - 1
 
 
-@lru_cache(maxsize=None)
+@cache
 def variable(n: int, i: int) -> int:
     """Table of input `i` of `n`: the rows in which relay `i` is operated."""
     block = ((1 << (1 << i)) - 1) << (1 << i)  # rows 2**i .. 2**(i+1)-1
@@ -114,6 +114,4 @@ class Target:
         """
         step = 1 << i
         low = all_rows(self.n) & ~variable(self.n, i)
-        return bool(
-            (self.on & low) & (self.off >> step) | (self.off & low) & (self.on >> step)
-        )
+        return bool((self.on & low) & (self.off >> step) | (self.off & low) & (self.on >> step))

@@ -12,7 +12,16 @@ from typing import Literal
 
 from contactlogic.truth import Target
 
-__all__ = ["Isolate", "Job", "Limits", "Load", "LoadKind", "Objective", "SeparateContacts", "Supply"]
+__all__ = [
+    "Isolate",
+    "Job",
+    "Limits",
+    "Load",
+    "LoadKind",
+    "Objective",
+    "SeparateContacts",
+    "Supply",
+]
 
 LoadKind = Literal["lamp", "horn", "valve", "coil", "motor", "other"]
 Isolate = Literal["stored", "all", "none"]
