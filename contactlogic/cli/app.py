@@ -1,0 +1,104 @@
+"""The commands and their options."""
+
+from __future__ import annotations
+
+import io
+import sys
+from pathlib import Path
+from typing import Annotated
+
+import typer
+
+from contactlogic.cli.status import guarded
+
+__all__ = ["app", "main"]
+
+app = typer.Typer(
+    name="contactlogic",
+    help="From a truth table to proven relay contact wiring with the fewest changeover contacts.",
+    add_completion=False,
+    no_args_is_help=True,
+    pretty_exceptions_enable=False,
+    rich_markup_mode=None,  # plain help starts in half the time
+    context_settings={"help_option_names": ["-h", "--help"]},
+)
+
+
+def main() -> None:
+    """The installed command `contactlogic`."""
+    for stream in (sys.stdout, sys.stderr):
+        if isinstance(stream, io.TextIOWrapper):  # a title may not fit the terminal's encoding
+            stream.reconfigure(errors="backslashreplace")
+    app()
+
+
+def _version(wanted: bool) -> None:
+    if wanted:
+        from importlib.metadata import version
+
+        typer.echo(f"contactlogic {version('contactlogic')}")
+        raise typer.Exit
+
+
+@app.callback()
+def _root(
+    version: Annotated[
+        bool,
+        typer.Option("--version", callback=_version, is_eager=True, help="Print the version."),
+    ] = False,
+) -> None:
+    del version
+
+
+@app.command()
+def wire(
+    job: Annotated[
+        Path, typer.Argument(metavar="JOB", help="Job file: .toml, or a table as .csv or .xlsx.")
+    ],
+    out: Annotated[
+        Path | None,
+        typer.Option(
+            metavar="DIR",
+            help="Folder for the papers; else named after the job, in the current folder.",
+        ),
+    ] = None,
+    force: Annotated[
+        bool, typer.Option("--force", help="Write even where the folder holds other files.")
+    ] = False,
+    json: Annotated[
+        bool, typer.Option("--json", help="Print the design as JSON alone; write no file.")
+    ] = False,
+    quiet: Annotated[bool, typer.Option("--quiet", "-q", help="Print errors only.")] = False,
+    verbose: Annotated[
+        bool, typer.Option("--verbose", "-v", help="Say more, for instance of each cover.")
+    ] = False,
+    seed: Annotated[int, typer.Option(min=0, help="Other seeds search in another order.")] = 0,
+    seconds: Annotated[
+        float, typer.Option(min=0.1, metavar="S", help="Time for the search at most.")
+    ] = 60.0,
+    loads: Annotated[
+        str | None,
+        typer.Option(metavar="A,B", help="Which columns of a .csv or .xlsx table are loads."),
+    ] = None,
+    unlisted: Annotated[
+        str | None,
+        typer.Option(metavar="off|free", help="What loads do in rows that a .csv or .xlsx lacks."),
+    ] = None,
+) -> None:
+    """Wire the loads of JOB with as few changeover contacts as found, prove it and draw it."""
+    from contactlogic.cli import wiring
+
+    request = wiring.Request(
+        job=job,
+        out=out,
+        force=force,
+        json=json,
+        quiet=quiet,
+        verbose=verbose,
+        seed=seed,
+        seconds=seconds,
+        loads=loads,
+        unlisted=unlisted,
+    )
+    with guarded(keep=str(job), trace=verbose):
+        wiring.run(request)

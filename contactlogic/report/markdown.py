@@ -1,0 +1,183 @@
+"""`report.md`: everything a wireman or a restorer should keep with the finished wiring.
+
+One report holds every design of a run.  Its last table shows every row as built: a free cell
+becomes real behaviour once the wiring exists, so each one in which a load is on is marked.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Sequence
+
+from contactlogic.design import Design, Result
+from contactlogic.job.model import Job
+from contactlogic.report.cautions import CAUTIONS
+from contactlogic.report.facts import Facts, free_on
+from contactlogic.report.phrases import (
+    at_rest,
+    bound_line,
+    budget,
+    count,
+    formula,
+    not_given,
+    proof_line,
+    run_line,
+)
+from contactlogic.report.text import code, markdown
+from contactlogic.report.wiring import conductors, design_name
+from contactlogic.truth import settings
+
+__all__ = ["report"]
+
+
+def report(result: Result, facts: Sequence[Facts]) -> str:
+    """The whole report as Markdown text.
+
+    Args:
+        facts: of each design, in the order of `result.designs`.
+    """
+    job = result.job
+    names = [f"{design.form} {design.fingerprint}" for design in result.designs]
+    lines = [f"# {markdown(job.title) or 'Untitled'}", "", ", ".join(names), ""]
+    lines += _asked(job)
+    for design, known in zip(result.designs, facts, strict=True):
+        lines += _design(design, result, known)
+    lines += ["## Cautions", "", *(f"- {caution}" for caution in CAUTIONS)]
+    return "\n".join(lines) + "\n"
+
+
+def _asked(job: Job) -> list[str]:
+    """What the job states: rails, loads, limits."""
+    rows = 1 << len(job.relays)
+    listed = job.listed.bit_count()
+    lines = [
+        "## What was asked",
+        "",
+        f"- job file: {markdown(not_given(job.file))}",
+        f"- input relays: {', '.join(map(markdown, job.relays)) or 'none'}",
+        f"- rows: {rows}, of them {listed} listed and {rows - listed} unlisted",
+        f"- supply, feed: {markdown(not_given(job.supply.feed))}",
+        f"- supply, return: {markdown(not_given(job.supply.return_))}",
+        f"- isolate: {job.limits.isolate}",
+        f"- objective: {job.limits.objective}",
+        "",
+    ]
+    rows_of_loads = []
+    for load in job.loads:
+        target = load.target
+        amps = None if load.amps is None else f"{load.amps:g} A"
+        wanted = (target.on.bit_count(), target.off.bit_count(), target.free.bit_count())
+        source = "table" if load.formula is None else code(load.formula)
+        facts = (not_given(load.kind), not_given(amps))
+        rows_of_loads.append((markdown(load.name), *facts, *wanted, source))
+    header = ("load", "kind", "current", "rows on", "rows off", "rows free", "wanted by")
+    return [*lines, *_table(header, rows_of_loads), ""]
+
+
+def _design(design: Design, result: Result, facts: Facts) -> list[str]:
+    job = result.job
+    network = design.network
+    counts = network.per_relay()
+    lines = [
+        f"## {design.form.capitalize()} {design.fingerprint}",
+        "",
+        f"{markdown(design_name(design, job))}",
+        "",
+        f"**{markdown(at_rest(facts.tables))}**",
+        "",
+        f"- poles: {len(network.poles)}",
+        f"- contacts: {sum(n.contacts for n in counts.values())}",
+        f"- longest run: {markdown(run_line(facts))}",
+        f"- nets: {len(network.nets())}, the return rail not counted",
+        f"- bound: {bound_line(design.bound)}",
+        f"- {proof_line(design, job, facts)}",
+        "",
+    ]
+    lines += [f"- note: {markdown(note)}" for note in design.notes]
+    lines += [""] if design.notes else []
+    lines += ["### Loads as built", ""]
+    lines += _table(
+        ("load", "switching algebra", "longest run"),
+        [
+            (markdown(load), code(formula(facts, load, len(network.relays))), facts.runs[load])
+            for load in network.loads
+        ],
+    )
+    lines += ["", "### Contacts per relay", ""]
+    header = ["relay", "poles", "makes", "breaks", "changeovers", "springs", "budget", "follows"]
+    rows = [
+        [
+            markdown(relay),
+            *(n.poles, n.makes, n.breaks, n.changeovers, n.springs),
+            budget(job.limits, relay) or "none",
+            markdown(result.repeaters.get(relay, "")),
+        ]
+        for relay, n in counts.items()
+    ]
+    if not result.repeaters:
+        header, rows = header[:-1], [row[:-1] for row in rows]
+    lines += _table(header, rows)
+    lines += ["", "### Two-level covers", "", *_covers(design), ""]
+    lines += ["### Wiring", "", *_wiring(design, job), ""]
+    return [*lines, "### As built, row by row", "", *_rows(design, job, facts), ""]
+
+
+def _covers(design: Design) -> list[str]:
+    if not design.covers:
+        return ["None recorded."]
+    return _table(
+        ("load", "cover", "size", "status"),
+        [
+            (
+                markdown(cover.load),
+                code(cover.cover),
+                f"{count(cover.literals, 'literal')}, {count(cover.terms, 'term')}",
+                "proved least" if cover.proved else "best found",
+            )
+            for cover in design.covers
+        ],
+    )
+
+
+def _wiring(design: Design, job: Job) -> list[str]:
+    unwired = [load for load, net in design.network.loads.items() if net is None]
+    lines = _table(
+        ("wire", "net", "from", "to"),
+        [(c.wire, c.net, markdown(c.start), markdown(c.end)) for c in conductors(design, job)],
+    )
+    if unwired:
+        names = ", ".join(map(markdown, unwired))
+        lines += ["", f"Never on, so the feed terminal stays unwired: {names}."]
+    return lines
+
+
+def _rows(design: Design, job: Job, facts: Facts) -> list[str]:
+    """Every row, with the free and unlisted cells in which a load is on marked."""
+    network = design.network
+    marked = free_on(job, facts.tables)
+    legend = (
+        "`1` on, `0` off, as wanted or free. `1!` on although the job left it open: a don't-care "
+        "that the wiring turns into real behaviour. The last column says whether the job lists "
+        "the row and left the load free, or does not list the row."
+    )
+    loads = list(network.loads)
+    header = ["row", *map(markdown, network.relays), *map(markdown, loads), "on though left open"]
+    rows = []
+    for row in range(1 << len(network.relays)):
+        left_open = marked.get(row, {})
+        cells = [
+            ("1!" if load in left_open else "1") if facts.tables[load] >> row & 1 else "0"
+            for load in loads
+        ]
+        said = ", ".join(f"{markdown(load)} ({kind})" for load, kind in left_open.items())
+        rows.append((row, *settings(row, len(network.relays)), *cells, said))
+    note = f"{count(len(marked), 'row')} marked." if marked else "No row is marked."
+    return [legend, "", note, "", *_table(header, rows)]
+
+
+def _table(header: Sequence[str], rows: Iterable[Sequence[object]]) -> list[str]:
+    """A Markdown table; cells are already escaped."""
+    return [
+        "| " + " | ".join(header) + " |",
+        "|" + " --- |" * len(header),
+        *("| " + " | ".join(str(cell) for cell in row) + " |" for row in rows),
+    ]

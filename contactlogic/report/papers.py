@@ -1,0 +1,57 @@
+"""All papers of a run, made in memory: file name -> content, ready for `folder.write_folder`."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+
+from contactlogic.design import Result
+from contactlogic.errors import RenderError
+from contactlogic.report.facts import Facts
+from contactlogic.report.markdown import report
+from contactlogic.report.wiring import schedule_csv, wiring_csv
+
+__all__ = ["Papers", "papers"]
+
+
+@dataclass(frozen=True)
+class Papers:
+    """Files by their path inside the output folder, and what the user should be told of them."""
+
+    files: Mapping[str, bytes]
+    notes: tuple[str, ...] = ()
+
+
+def papers(result: Result, facts: Sequence[Facts]) -> Papers:
+    """Every file of the output folder.
+
+    Where no renderer can be run the drawing's text takes the place of its pictures, and a note
+    says so.
+    """
+    from contactlogic.draw import draw_ladder, render
+    from contactlogic.report.designfile import dumps
+
+    files = {
+        "design.json": dumps(result).encode(),
+        "report.md": report(result, facts).encode(),
+    }
+    notes = []
+    for design in result.designs:
+        form = design.form
+        text = draw_ladder(
+            design,
+            title=result.job.title,
+            supply=result.job.supply,
+            kinds={load.name: load.kind for load in result.job.loads},
+            separate=result.job.limits.contacts,
+        )
+        try:
+            pictures = render(text, ("svg", "png"))
+        except RenderError as error:
+            files[f"{form}/drawing.gv"] = text.encode()
+            notes.append(f"no picture of the {form}, its drawing.gv was written instead: {error}")
+        else:
+            files |= {f"{form}/drawing.{kind}": data for kind, data in pictures.items()}
+        files[f"{form}/wiring.csv"] = wiring_csv(design, result.job).encode()
+        files[f"{form}/schedule.csv"] = schedule_csv(design, result.job).encode()
+    return Papers(files, tuple(notes))
