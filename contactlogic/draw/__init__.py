@@ -1,0 +1,60 @@
+"""Drawings: their text (pure) and, in `render` alone, their pictures."""
+
+from __future__ import annotations
+
+from collections.abc import Collection, Mapping
+
+from contactlogic.design import Design
+from contactlogic.draw.arrange import SheetFacts, arrange
+from contactlogic.draw.dot import dot_text
+from contactlogic.draw.render import RendererMissing, render
+from contactlogic.draw.rungs import NotALadder
+from contactlogic.job.model import LoadKind, Supply
+from contactlogic.network import Network
+
+__all__ = ["NotALadder", "RendererMissing", "draw_ladder", "ladder_drawing", "render"]
+
+
+def ladder_drawing(
+    network: Network,
+    *,
+    title: str,
+    fingerprint: str,
+    supply: Supply = Supply(),  # noqa: B008 - frozen
+    kinds: Mapping[str, LoadKind | None] | None = None,
+    separate: Collection[str] = (),
+) -> str:
+    """The ladder drawing of a network, as text in the DOT language for `render`.
+
+    Args:
+        network: a network of ladder form.
+        title: any text; shown on one line and shortened where it is too long.
+        fingerprint: tells this design from others (`Design.fingerprint`).
+        supply: labels of the rails; "supply" and "return" where not given.
+        kinds: kind of each load, for its symbol; a plain rectangle where not given.
+        separate: relays with separate makes and breaks, for their terminal marks.
+
+    Raises:
+        NotALadder: the network does not keep the ladder definition.
+    """
+    facts = SheetFacts(title, fingerprint, supply, kinds or {}, separate)
+    return dot_text(arrange(network, facts).sheet)
+
+
+def draw_ladder(
+    design: Design,
+    *,
+    title: str,
+    supply: Supply = Supply(),  # noqa: B008 - frozen
+    kinds: Mapping[str, LoadKind | None] | None = None,
+    separate: Collection[str] = (),
+) -> str:
+    """`ladder_drawing` of a finished design."""
+    return ladder_drawing(
+        design.network,
+        title=title,
+        fingerprint=design.fingerprint,
+        supply=supply,
+        kinds=kinds,
+        separate=separate,
+    )

@@ -1,0 +1,96 @@
+"""A sheet as text for a renderer of the DOT language, everything at a fixed position.
+
+Pure text.  Every line is an edge between two point nodes whose ends are not clipped, every text a
+plain node, so that nothing is left to a layout engine (`neato -n2`).  The same sheet gives the
+same bytes.
+"""
+
+from __future__ import annotations
+
+from contactlogic.draw.sheet import BLACK, Circle, Line, Point, Sheet, Text, plain
+
+__all__ = ["dot_text"]
+
+
+def dot_text(sheet: Sheet) -> str:
+    """The sheet in the DOT language."""
+    import graphviz
+
+    graph = graphviz.Graph(
+        "drawing",
+        comment=_comment(sheet.title),
+        graph_attr={"outputorder": "edgesfirst", "splines": "line", "pad": "0", "bgcolor": "white"},
+        node_attr={
+            "shape": "point",
+            "style": "invis",
+            "width": "0",
+            "height": "0",
+            "margin": "0",
+            "label": "",
+            "fontname": "Helvetica",
+        },
+        edge_attr={"headclip": "false", "tailclip": "false"},
+    )
+    ids: dict[Point, str] = {}
+
+    def place(point: Point) -> str:
+        return f"{_number(point[0])},{_number(sheet.height - point[1])}"
+
+    def node(point: Point) -> str:
+        at = (round(point[0], 2), round(point[1], 2))
+        if at not in ids:
+            ids[at] = f"p{len(ids) + 1}"
+            graph.node(ids[at], pos=place(at))
+        return ids[at]
+
+    node((0.0, 0.0))
+    node((sheet.width, sheet.height))
+    for line in sheet.lines:
+        graph.edge(node(line.start), node(line.end), **_line_style(line))
+    for i, circle in enumerate(sheet.circles, start=1):
+        graph.node(f"c{i}", pos=place(circle.centre), **_circle_style(circle))
+    for i, text in enumerate(sheet.texts, start=1):
+        graph.node(f"t{i}", pos=place(text.at), **_text_style(text))
+    return str(graph.source)
+
+
+def _number(value: float) -> str:
+    text = f"{value:.2f}".rstrip("0").rstrip(".")
+    return "0" if text == "-0" else text
+
+
+def _comment(title: str) -> str:
+    return plain(title) or "drawing"
+
+
+def _line_style(line: Line) -> dict[str, str]:
+    style = {"class": line.kind, "penwidth": _number(line.weight)}
+    if line.colour != BLACK:
+        style["color"] = line.colour
+    return style
+
+
+def _circle_style(circle: Circle) -> dict[str, str]:
+    inches = f"{2 * circle.radius / 72:.4f}"
+    style = {"shape": "circle", "fixedsize": "true", "width": inches, "height": inches}
+    style["style"] = "filled" if circle.filled else "solid"
+    if circle.filled:
+        style["fillcolor"] = "black"
+    else:
+        style["penwidth"] = "1.2"
+    return style
+
+
+def _text_style(text: Text) -> dict[str, str]:
+    import graphviz
+
+    # DOT labels read character entities, so an ampersand of the user's must be written as one
+    label = graphviz.escape(text.text.replace("&", "&amp;"))
+    style = {"shape": "plain", "style": "solid", "label": label, "fontsize": _number(text.size)}
+    if text.bold:
+        style["fontname"] = "Helvetica-Bold"
+    elif text.slant:
+        style["fontname"] = "Helvetica-Oblique"
+    if text.colour != BLACK:
+        style["fontcolor"] = text.colour
+    return style
