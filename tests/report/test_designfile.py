@@ -248,7 +248,7 @@ def broken(change: Callable[[dict[str, Any], dict[str, Any]], object]) -> str:
         ),
         (
             lambda _, design: design["per_relay"].pop("UP"),
-            "designs[0].per_relay.UP: is missing\n  expected: 1 poles, as in contacts",
+            "designs[0].per_relay.UP: is missing\n  expected: counts, since UP has contacts",
         ),
         (
             lambda _, design: design["per_relay"].update(TIDE=design["per_relay"]["UP"]),
@@ -341,8 +341,7 @@ def test_any_other_value_anywhere_is_refused_or_read_but_never_breaks(value, dat
         place = place[key]
     try:
         read = read_design(json.dumps(file))
-    except DesignFileError as error:
-        assert str(error)
-    else:
-        for design in read.designs:
-            design.network.assert_consistent()
+    except DesignFileError:
+        return
+    for design in read.designs:
+        design.network.assert_consistent()
