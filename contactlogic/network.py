@@ -67,7 +67,8 @@ class Network:
         relays: relay names in bit order.
         supply: net of the supply rail.
         loads: load name to its net; None if never on, the supply if always on.  Order is kept.
-        poles: the poles in use, sorted by relay order, then number (1, 2, ... per relay).
+        poles: the poles in use, sorted by relay order, then number (from 1, each once per relay;
+            a design file may leave gaps).
     """
 
     relays: tuple[str, ...]
@@ -88,9 +89,9 @@ class Network:
             if order[pole.relay] < last:
                 raise ValueError("poles are not sorted by relay")
             last = order[pole.relay]
-            seen[pole.relay] += 1
-            if pole.number != seen[pole.relay]:
+            if pole.number <= seen[pole.relay]:
                 raise ValueError(f"{pole.relay}: pole {pole.number} is out of sequence")
+            seen[pole.relay] = pole.number
             if pole.make is None and pole.break_ is None:
                 raise ValueError(f"{pole.relay} pole {pole.number} has only a common")
 
