@@ -70,7 +70,7 @@ class Facts:
 
 def facts(design: Design) -> Facts:
     """Formulas, rows and longest runs of a design."""
-    from contactlogic.ladder.recognise import formulas
+    from contactlogic.ladder import formulas
 
     return Facts(formulas(design.network), as_built(design.network), longest_runs(design))
 
