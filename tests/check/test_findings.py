@@ -7,7 +7,6 @@ from dataclasses import replace
 import networkx as nx
 import pytest
 from hypothesis import given
-from hypothesis import strategies as st
 from oracles import contact_graph
 from strategies import networks
 
@@ -256,26 +255,3 @@ def test_a_network_without_relays_has_one_row():
     assert prove(network, {"X": Target(0, 0), "Y": Target(0, 0)}, form="ladder").explain() == (
         "wrong: X is on in row 0 (no relays), wanted off\n  supply -> X"
     )
-
-
-@given(st.integers(1, 5), st.data())
-def test_a_selecting_tree_has_no_sneak_paths(n, data):
-    # Shannon 1949; Moore 1960 (seen in abstract): a full selecting tree of n relays to 2^n loads
-    # takes 2^n - 1 changeovers and has no sneak paths.
-    relays = tuple(f"K{i}" for i in range(n))
-    poles = []
-    for i in reversed(range(n)):
-        for part in range(1 << (n - 1 - i)):
-            net = f"{i + 1}_{part}" if i + 1 < n else "L"
-            poles.append(Pole(relays[i], part + 1, net, f"{i}_{2 * part + 1}", f"{i}_{2 * part}"))
-    loads = {f"D{row}": f"0_{row}" for row in range(1 << n)}
-    poles.sort(key=lambda pole: (relays.index(pole.relay), pole.number))
-    network = Network(relays, "L", loads, tuple(poles))
-    wanted = {f"D{row}": Target(n, 1 << row) for row in range(1 << n)}
-    assert len(poles) == 2**n - 1
-    assert prove(network, wanted, form="ladder", isolated=list(wanted)).ok
-    row = data.draw(st.integers(0, (1 << n) - 1))
-    other = data.draw(st.integers(0, (1 << n) - 1).filter(lambda r: r != row))
-    changed = wanted | {f"D{row}": Target(n, 1 << other)}
-    wrong = prove(network, changed, form="ladder").wrong
-    assert [(w.load, w.row) for w in wrong] == [(f"D{row}", min(row, other))]
