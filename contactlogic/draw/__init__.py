@@ -38,7 +38,7 @@ def ladder_drawing(
         NotALadder: the network does not keep the ladder definition.
     """
     facts = SheetFacts(title, fingerprint, supply, kinds or {}, separate)
-    return dot_text(arrange(network, facts).sheet)
+    return dot_text(arrange(network, facts))
 
 
 def draw_ladder(

@@ -17,10 +17,10 @@ from typing import Literal
 __all__ = [
     "BLACK",
     "GREY",
-    "Box",
     "Circle",
     "Line",
     "LineKind",
+    "Pen",
     "Point",
     "Sheet",
     "Text",
@@ -32,7 +32,6 @@ __all__ = [
 ]
 
 Point = tuple[float, float]
-Box = tuple[float, float, float, float]
 LineKind = Literal["wire", "rail", "symbol", "rule"]
 
 BLACK = "#000000"
@@ -52,14 +51,13 @@ _BOLD = 1.09  # Helvetica-Bold is at most about this much wider over whole words
 
 @dataclass(frozen=True)
 class Line:
-    """A straight line.  `net` names the net of a wire or rail, None for anything else."""
+    """A straight line; `kind` becomes its class in the picture."""
 
     start: Point
     end: Point
     kind: LineKind = "symbol"
     weight: float = 1.1
     colour: str = BLACK
-    net: str | None = None
 
 
 @dataclass(frozen=True)
@@ -82,11 +80,10 @@ class Text:
     slant: bool = False
     colour: str = BLACK
 
-    def box(self) -> Box:
-        """Left, top, right, bottom of the space the text takes up."""
-        half = text_width(self.text, self.size, self.bold) / 2
-        x, y = self.at
-        return (x - half, y - 0.45 * self.size, x + half, y + 0.45 * self.size)
+    @property
+    def width(self) -> float:
+        """Estimated width."""
+        return text_width(self.text, self.size, self.bold)
 
 
 @dataclass(frozen=True)

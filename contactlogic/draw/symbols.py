@@ -38,8 +38,8 @@ def junction(pen: Pen, at: Point) -> None:
 
 
 def open_terminal(pen: Pen, at: Point) -> None:
-    """A small ring: the wire goes on elsewhere on the sheet."""
-    pen.circles.append(Circle(at, 2.6))
+    """A small ring at the left end of a wire that comes from elsewhere on the sheet."""
+    pen.circles.append(Circle((at[0] - 2.6, at[1]), 2.6))
 
 
 def load(pen: Pen, x: float, y: float, kind: LoadKind | None) -> None:

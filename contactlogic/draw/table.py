@@ -60,7 +60,7 @@ def draw_table(
     room = min(right - left, _WIDEST)
     left = (left + right - room) / 2  # on a very wide sheet the columns stay together
     right = left + room
-    names = short_names((row.relay for row in rows), 0.2 * room, _SIZE)
+    names = short_names((row.relay for row in rows), 0.28 * room, _SIZE)
     name_wide = max([text_width(text, _SIZE) for text in names.values()] + [40])
     terminals = [wrap(row.terminals or ("-",), " / ", 0.26 * room, _SIZE) for row in rows]
     wide = max([text_width(line, _SIZE) for lines in terminals for line in lines] + [50])

@@ -55,7 +55,13 @@ def random_ladder(seed: int, size: int) -> Network:
         feed = rng.choice(open_nets[-6:] if rng.random() < 0.7 else ["L"])
         end = next(fresh)
         block: list[Edge] = []
-        part(feed, end, rng.randint(1, 8), block)
+        if rng.random() < 0.2:  # branches side by side with a tap each: out of reach for some
+            for _ in range(rng.randint(2, 4)):
+                middle = next(fresh)
+                part(feed, middle, rng.randint(1, 2), block)
+                part(middle, end, rng.randint(1, 2), block)
+        else:
+            part(feed, end, rng.randint(1, 8), block)
         edges += block
         loads.append(end)
         open_nets.append(end)

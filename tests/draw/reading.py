@@ -13,7 +13,7 @@ from itertools import combinations
 Point = tuple[float, float]
 Box = tuple[float, float, float, float]
 
-_NODE = re.compile(r'^\t(\w+) \[(.*)\]$')
+_NODE = re.compile(r"^\t(\w+) \[(.*)\]$")
 _EDGE = re.compile(r"^\t(\w+) -- (\w+) \[(.*)\]$")
 _ATTRIBUTE = re.compile(r'(\w+)=("(?:[^"\\]|\\.)*"|[^\s\]]+)')
 
@@ -73,7 +73,7 @@ def read(dot: str) -> Reading:
                     "Bold" in font, "Oblique" in font,
                 )
             )  # fmt: skip
-    found.size = points["p2"] if points["p1"][1] else (points["p2"][0], points["p1"][1])
+    found.size = (points["p2"][0], points["p1"][1])  # the sheet's corners come first
     return found
 
 
@@ -134,7 +134,7 @@ class ReadContact:
 class Netlist:
     contacts: list[ReadContact]
     fed: dict[str, str | None]  # load -> wire number
-    rails: tuple[str, str]
+    rails: list[tuple[str, str | None]]  # label and wire number
     unnumbered: list[tuple[Point, ...]]
     mixed: list[int]
 
@@ -194,9 +194,7 @@ class Reader:
             marks = [self._mark(p, p[0] - middle) for p in (hinge, throw)]
             numbers = [self.number_at(p) or "?" for p in (hinge, throw)]
             contacts.append(
-                ReadContact(
-                    name, (marks[0], numbers[0]), (marks[1], numbers[1]), tip[1] < hinge[1]
-                )
+                ReadContact(name, (marks[0], numbers[0]), (marks[1], numbers[1]), tip[1] < hinge[1])
             )
         fed = {}
         for label in labels:
@@ -204,17 +202,21 @@ class Reader:
                 x, y = label.at
                 (name,) = [
                     t.text for t in labels
-                    if t.bold and t.size == 12 and 15 < t.at[0] - x < 40 and 15 < t.at[1] - y < 30
+                    if t.bold and t.text != 'M' and 15 < t.at[0] - x < 40 and 15 < t.at[1] - y < 30
                 ]  # fmt: skip
                 close = [p for p in ends if 0 < y - p[1] < 10 and 0 < p[0] - x < 12]
                 fed[name] = self.number_at(close[0]) if close else None
-        rails = self.drawing.of("rail")
-        first, last = sorted(rails)[0], sorted(rails)[-1]
+        rails = [
+            (t.text, self.number_at(rail[0]))
+            for rail in self.drawing.of("rail")
+            for t in labels
+            if t.at[0] == rail[0][0] and 0 < t.at[1] - max(rail[0][1], rail[1][1]) < 20
+        ]
         mixed = [g for g, numbers in self.numbers.items() if len(numbers) != 1]
         return Netlist(
             contacts,
             fed,
-            (self.number_at(first[0]) or "?", self.number_at(last[0]) or "?"),
+            rails,
             self.unnumbered(),
             mixed,
         )
