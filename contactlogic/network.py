@@ -7,12 +7,12 @@ synthesisers use; the proof in `check` has a conduction of its own and shares no
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping
+from collections.abc import Collection, Iterator, Mapping
 from dataclasses import dataclass
 
 from contactlogic.truth import literal
 
-__all__ = ["Contact", "Network", "Pole", "PoleCount", "conduction"]
+__all__ = ["Contact", "Network", "Pole", "PoleCount", "back_feeds", "conduction"]
 
 
 @dataclass(frozen=True)
@@ -161,3 +161,21 @@ def conduction(network: Network, source: str | None = None) -> dict[str, int]:
                 joined[other] |= more
                 waiting.append(other)
     return joined
+
+
+def back_feeds(network: Network, isolated: Collection[str]) -> int:
+    """Rows in which an isolated load that is off is joined to the net of another that is off.
+
+    Over all settings, listed or not (section 3); loads on one net are not told apart.
+    """
+    live = conduction(network)
+    nets = {net for net in network.loads.values() if net is not None}
+    rows = 0
+    for load in sorted(isolated):
+        net = network.loads[load]
+        if net is None:
+            continue
+        joined = conduction(network, net)
+        for other in nets - {net}:
+            rows |= joined[other] & ~live[net]
+    return rows

@@ -1,0 +1,191 @@
+"""Order and pairing together, by constraint programming, so that the poles are fewest.
+
+The order inside every series is a Hamiltonian circuit through its parts and a marker for its ends;
+which contacts then meet at a net follows from who is first, last and next to whom.  A make and a
+break of one relay that meet may pair, each at most once, over all rungs at once (rungs meet at the
+supply rail and at shared joints).  Solved by the CP-SAT solver of OR-Tools with a limit in its own
+deterministic time, one worker and a fixed seed, so that equal input gives an equal answer.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Mapping
+from dataclasses import dataclass
+from itertools import combinations
+from typing import Any
+
+from contactlogic.ladder.plan import Branch, Plan
+from contactlogic.ladder.tree import Leaf, Series, Tree, leaves
+
+__all__ = ["Arrangement", "Rules", "arrange"]
+
+_END = -1  # stands for the outside of a series among its parts
+
+
+@dataclass(frozen=True)
+class Rules:
+    """Which relays never pair, and how many poles each may use; relay numbers as in `Leaf`."""
+
+    separate: frozenset[int] = frozenset()
+    poles: Mapping[int, int] | None = None
+
+
+@dataclass(frozen=True)
+class Arrangement:
+    """The plan with every series in its chosen order.
+
+    `poles` is the number the engine counted, `least` whether it proved that no order of this plan
+    takes fewer.
+    """
+
+    plan: Plan
+    poles: int
+    least: bool
+
+
+Path = tuple[int, ...]  # branch number, then part numbers down the tree
+Chain = tuple[Any, ...]  # conditions (solver literals) that must hold together
+
+
+class _Model:
+    """One plan as a CP-SAT model."""
+
+    def __init__(self, plan: Plan, rules: Rules) -> None:
+        from ortools.sat.python import cp_model
+
+        self.plan = plan
+        self.rules = rules
+        self.engine = cp_model.CpModel()
+        self.next_to: dict[Path, dict[tuple[int, int], Any]] = {}
+        self.leaf: dict[Path, Leaf] = {}
+        self.options: dict[tuple[Path, Path], list[Any]] = {}
+        self.uses: dict[Path, list[Any]] = {}
+        meeting: dict[int, list[dict[Path, Chain]]] = {}
+        for number, branch in enumerate(plan.branches):
+            left, right = self._sides(branch.tree, (number,))
+            meeting.setdefault(branch.start, []).append(left)
+            meeting.setdefault(branch.end, []).append(right)
+        for sides in meeting.values():
+            for one, other in combinations(sides, 2):
+                self._meet(one, other, ())
+
+    def _sides(self, tree: Tree, path: Path) -> tuple[dict[Path, Chain], dict[Path, Chain]]:
+        """Contacts that touch the left and the right end of a tree, with the conditions for it."""
+        if isinstance(tree, Leaf):
+            self.leaf[path] = tree
+            self.uses[path] = []
+            return {path: ()}, {path: ()}
+        sides = [self._sides(part, (*path, i)) for i, part in enumerate(tree.parts)]
+        left: dict[Path, Chain] = {}
+        right: dict[Path, Chain] = {}
+        if not isinstance(tree, Series):
+            for part_left, part_right in sides:
+                left |= part_left
+                right |= part_right
+            for one, other in combinations(sides, 2):
+                self._meet(one[0], other[0], ())
+                self._meet(one[1], other[1], ())
+            return left, right
+        order = self._order(path, len(tree.parts))
+        for i, (part_left, part_right) in enumerate(sides):
+            left |= {p: (*chain, order[_END, i]) for p, chain in part_left.items()}
+            right |= {p: (*chain, order[i, _END]) for p, chain in part_right.items()}
+            for j, (next_left, _) in enumerate(sides):
+                if i != j:
+                    self._meet(part_right, next_left, (order[i, j],))
+        return left, right
+
+    def _order(self, path: Path, count: int) -> dict[tuple[int, int], Any]:
+        places = (_END, *range(count))
+        arcs = {
+            (i, j): self.engine.new_bool_var(f"{path}:{i}>{j}")
+            for i in places
+            for j in places
+            if i != j
+        }
+        self.engine.add_circuit([(i + 1, j + 1, var) for (i, j), var in arcs.items()])
+        self.next_to[path] = arcs
+        return arcs
+
+    def _meet(self, one: dict[Path, Chain], other: dict[Path, Chain], extra: Chain) -> None:
+        """Offer every make and break of one relay that may meet here as a pair."""
+        for p, chain in one.items():
+            for q, more in other.items():
+                a, b = self.leaf[p], self.leaf[q]
+                if a.relay != b.relay or a.make == b.make or a.relay in self.rules.separate:
+                    continue
+                chosen = self.engine.new_bool_var("")
+                for condition in (*chain, *more, *extra):
+                    self.engine.add_implication(chosen, condition)
+                self.uses[p].append(chosen)
+                self.uses[q].append(chosen)
+                self.options.setdefault((min(p, q), max(p, q)), []).append(chosen)
+
+    def solve(self, effort: float, seed: int) -> Arrangement | None:
+        """The best order found within `effort` (deterministic seconds), None if there is none."""
+        from ortools.sat.python import cp_model
+
+        for choices in self.uses.values():
+            self.engine.add_at_most_one(choices)
+        contacts: dict[int, int] = {}
+        for leaf in self.leaf.values():
+            contacts[leaf.relay] = contacts.get(leaf.relay, 0) + 1
+        pairs: dict[int, list[Any]] = {relay: [] for relay in contacts}
+        for (p, _), choices in self.options.items():
+            pairs[self.leaf[p].relay] += choices
+        budgets = self.rules.poles or {}
+        busiest = self.engine.new_int_var(0, max(contacts.values(), default=0), "busiest")
+        for relay, count in sorted(contacts.items()):
+            poles = count - sum(pairs[relay])
+            self.engine.add(busiest >= poles)
+            if relay in budgets:
+                self.engine.add(poles <= budgets[relay])
+        total = sum(contacts.values()) - sum(sum(pairs[relay]) for relay in sorted(pairs))
+        weight = max(contacts.values(), default=0) + 1
+        self.engine.minimize(total * weight + busiest)
+        solver = cp_model.CpSolver()
+        solver.parameters.num_workers = 1
+        solver.parameters.random_seed = seed
+        solver.parameters.max_deterministic_time = effort
+        status = solver.solve(self.engine)
+        if status not in (cp_model.OPTIMAL, cp_model.FEASIBLE):
+            return None
+        ordered = Plan(
+            tuple(
+                Branch(b.start, b.end, self._ordered(solver, b.tree, (i,)))
+                for i, b in enumerate(self.plan.branches)
+            ),
+            self.plan.loads,
+        )
+        poles_found = round(solver.objective_value) // weight
+        least = int(solver.best_objective_bound + weight - 1e-6) // weight >= poles_found
+        return Arrangement(ordered, poles_found, least or status == cp_model.OPTIMAL)
+
+    def _ordered(self, solver: Any, tree: Tree, path: Path) -> Tree:
+        if isinstance(tree, Leaf):
+            return tree
+        parts = [self._ordered(solver, part, (*path, i)) for i, part in enumerate(tree.parts)]
+        if not isinstance(tree, Series):
+            return type(tree)(tuple(parts))
+        return Series(tuple(parts[i] for i in self._walk(solver, path)))
+
+    def _walk(self, solver: Any, path: Path) -> Iterator[int]:
+        following = {i: j for (i, j), var in self.next_to[path].items() if solver.value(var)}
+        here = following[_END]
+        while here != _END:
+            yield here
+            here = following[here]
+
+
+def arrange(plan: Plan, rules: Rules, *, effort: float = 5.0, seed: int = 0) -> Arrangement | None:
+    """Order every series of `plan` for the fewest poles, then for the least busiest relay.
+
+    Args:
+        effort: limit in the solver's deterministic seconds.
+        seed: of the solver.
+
+    Returns None if no order keeps the pole budgets, or none was found in time.
+    """
+    if not any(True for branch in plan.branches for _ in leaves(branch.tree)):
+        return Arrangement(plan, 0, True)
+    return _Model(plan, rules).solve(effort, seed)

@@ -1,0 +1,117 @@
+"""Several good series-parallel trees for each load, and good ways to combine them.
+
+Up to four relays every tree offered has the least contacts there are; above that the trees come
+from factored covers, sums of products and products of sums, and from case splits, each simplified
+inside its own freedom.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from random import Random
+
+from contactlogic.ladder.cases import by_cases, least_small, needed
+from contactlogic.ladder.factor import Term, factor_products, factor_sums
+from contactlogic.ladder.refine import refine
+from contactlogic.ladder.small import RELAYS
+from contactlogic.ladder.tree import (
+    Leaf,
+    Tree,
+    canonical,
+    contact_count,
+    fewest_poles,
+    leaves,
+    sort_key,
+)
+from contactlogic.minimize.cube import Cover
+from contactlogic.truth import Target
+
+__all__ = ["candidate_trees", "combine", "least_tree"]
+
+_LEAST_TREES = 60  # least trees looked at for a load of few relays
+_LARGE = 150  # a tree of more contacts is left as its factoring made it: refining would take long
+
+
+def candidate_trees(target: Target, covers: Sequence[Cover], limit: int) -> list[Tree | bool]:
+    """Up to `limit` trees for a load, best first; a single True or False if it may be constant.
+
+    Best is the fewest poles any arrangement could give, then the fewest contacts; with four
+    relays or fewer, the fewest contacts, then poles.
+    """
+    relays = needed(target)
+    if relays is None:
+        return [bool(target.on)]
+    found: dict[Tree, None] = {}
+    few = target.n <= RELAYS or len(relays) <= RELAYS
+    if few:
+        chosen = range(target.n) if target.n <= RELAYS else relays
+        for tree in least_small(target, chosen, limit=_LEAST_TREES) or ():
+            found.setdefault(canonical(tree))
+    else:
+        for cover in covers:
+            terms: list[Term] = [frozenset(Leaf(*c) for c in group) for group in cover.groups]
+            tree = factor_products(terms) if cover.kind == "sop" else factor_sums(terms)
+            found.setdefault(canonical(_refined(tree, target)))
+        found.setdefault(canonical(least_tree(target)))
+
+    def rank(tree: Tree) -> tuple[object, ...]:
+        sizes = (fewest_poles([tree]), contact_count(tree))
+        return (*(sizes[::-1] if few else sizes), sort_key(tree))
+
+    ranked = sorted(found, key=rank)
+    return list(ranked[:limit])
+
+
+def least_tree(target: Target) -> Tree:
+    """One good tree by cases; `target` must not accept a constant."""
+    tree = by_cases(target)
+    if tree is None:
+        raise ValueError("the target accepts a constant")
+    return _refined(tree, target)
+
+
+def _refined(tree: Tree, target: Target) -> Tree:
+    return tree if contact_count(tree) > _LARGE else refine(tree, target)
+
+
+def combine(
+    choices: Sequence[Sequence[Tree | bool]],
+    count: int,
+    separate: frozenset[int],
+    seed: int,
+) -> list[tuple[Tree | bool, ...]]:
+    """Up to `count` different selections of one tree a load, fewest possible poles first.
+
+    A relay takes at least the larger of its makes and its breaks over all loads, so trees are
+    chosen to balance each other: coordinate descent on that bound from seeded random starts.
+    """
+    random = Random(seed)
+    found: dict[tuple[int, ...], tuple[int, int]] = {}
+    for start in range(3 * count):
+        picked = [0 if start == 0 else random.randrange(len(options)) for options in choices]
+        cost = _bound(choices, picked, separate)
+        improved = True
+        while improved:
+            improved = False
+            for load, options in enumerate(choices):
+                for option in range(len(options)):
+                    trial = [*picked[:load], option, *picked[load + 1 :]]
+                    if (trial_cost := _bound(choices, trial, separate)) < cost:
+                        picked, cost, improved = trial, trial_cost, True
+        found.setdefault(tuple(picked), cost)
+    ranked = sorted(found, key=lambda picked: (found[picked], picked))
+    return [
+        tuple(options[k] for options, k in zip(choices, picked, strict=True))
+        for picked in ranked[:count]
+    ]
+
+
+def _bound(
+    choices: Sequence[Sequence[Tree | bool]], picked: Sequence[int], separate: frozenset[int]
+) -> tuple[int, int]:
+    trees = [
+        tree
+        for options, k in zip(choices, picked, strict=True)
+        if not isinstance(tree := options[k], bool)
+    ]
+    return fewest_poles(trees, separate), sum(1 for tree in trees for _ in leaves(tree))
