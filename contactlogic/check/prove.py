@@ -147,7 +147,7 @@ def _backfeeds(
     told: set[tuple[str, str]] = set()
     for load in isolated:
         net = network.loads.get(load)
-        if net is None or net == network.supply:
+        if net is None:
             continue
         joined = wiring.joined(net)
         for other, elsewhere in network.loads.items():

@@ -51,8 +51,7 @@ def between(edges: Iterable[tuple[str, str]], s: str, t: str) -> frozenset[str]:
                 parent[other] = net
                 stack.append((other, iter(graph[other])))
                 break
-            if other != parent[net]:
-                low[net] = min(low[net], order[other])
+            low[net] = min(low[net], order[other])
         else:
             stack.pop()
             low[parent[net]] = min(low[parent[net]], low[net])

@@ -100,9 +100,9 @@ def _load_faults(
 
 
 def _fed_nets(network: Network) -> tuple[str, ...]:
-    """Nets of loads, supply left out, each once."""
+    """Nets of loads, each once."""
     nets = dict.fromkeys(network.loads.values())
-    return tuple(net for net in nets if net is not None and net != network.supply)
+    return tuple(net for net in nets if net is not None)
 
 
 def _idle_contacts(network: Network, wiring: Wiring) -> Iterator[str]:

@@ -35,10 +35,24 @@ HEIGHT = {name: height for height, layer in enumerate(LAYERS) for name in layer}
 
 SYNTHESISERS = {"minimize", "ladder", "search", "sequence", "wire"}
 
-ENGINES = ("pysat", "ortools", "pyeda", "dd", "graphviz", "lark", "openpyxl", "pydantic")
+ENGINES = (
+    "pysat",
+    "ortools.sat",  # the constraint solver's own layer
+    "ortools.linear_solver",  # integer programs; starts much faster, and has its own use
+    "pyeda",
+    "dd",
+    "graphviz",
+    "lark",
+    "openpyxl",
+    "pydantic",
+)
 """Third-party engines; each is met in one module, so that it can be exchanged there."""
 
-HEAVY = (*ENGINES, "networkx", "numpy", "pandas", "rich", "sympy", "typer")
+HEAVY = {
+    *(engine.split(".")[0] for engine in ENGINES),
+    *("networkx", "numpy", "pandas", "rich", "sympy", "typer"),
+}
+"""What takes long to load; only functions that need it import it."""
 
 TEXT_EVALUATORS = {"eval", "exec", "__import__", "sympify", "parse_expr", "literal_eval"}
 
@@ -143,7 +157,13 @@ def test_the_proof_shares_no_code_with_what_it_proves():
 
 @pytest.mark.parametrize("engine", ENGINES)
 def test_each_engine_is_met_in_one_module(engine):
-    assert len([module for module in MODULES if engine in third_party(module)]) <= 1
+    met = {
+        module
+        for module in MODULES
+        for source, _ in imports(module)
+        if source == engine or source.startswith(f"{engine}.")
+    }
+    assert len(met) <= 1
 
 
 def test_only_the_renderer_and_the_guarded_child_start_processes():
@@ -167,7 +187,12 @@ def test_nothing_evaluates_text(module):
     assert not [name for name in called if name.split(".")[-1] in TEXT_EVALUATORS]
     assert not {"compile", "builtins.compile"} & set(called)  # re.compile is another thing
     assert not {name for _, name in imports(module)} & TEXT_EVALUATORS
-    assert not third_party(module) & {"pickle", "marshal", "shelve", "code", "runpy"}
+    loaders = {"pickle", "marshal", "shelve", "code", "runpy"}
+    if (
+        module == "child"
+    ):  # pickles pass between the caller and a child it has started, nowhere else
+        loaders -= {"pickle"}
+    assert not third_party(module) & loaders
 
 
 @pytest.mark.parametrize("module", LIBRARY)
@@ -176,6 +201,8 @@ def test_the_library_is_silent_and_never_exits(module):
         "print", "input", "exit", "quit", "SystemExit", "sys.exit", "os._exit", "os.abort",
         "sys.stdout.write", "sys.stderr.write", "logging.basicConfig", "breakpoint",
     }  # fmt: skip
+    if module == "child":  # the child process ends so, past the clean-up of the engine it ran
+        barred -= {"os._exit"}
     assert not barred & set(calls(module))
     raised = [
         ast.unparse(node.exc)
@@ -224,12 +251,12 @@ def loaded_by(statement: str) -> set[str]:
 
 
 def test_importing_the_package_loads_nothing_heavy():
-    assert not loaded_by("import contactlogic") & set(HEAVY)
+    assert not loaded_by("import contactlogic") & HEAVY
 
 
 def test_importing_any_library_module_loads_no_engine():
     names = ", ".join(f"contactlogic.{module}" for module in LIBRARY if module)
-    assert not loaded_by(f"import {names}") & set(HEAVY)
+    assert not loaded_by(f"import {names}") & HEAVY
 
 
 def test_the_type_marker_is_shipped():

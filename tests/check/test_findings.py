@@ -153,6 +153,26 @@ def test_explain_shows_the_way_that_current_takes():
     )
 
 
+def test_the_shortest_way_is_shown():
+    # A long way is wired first and last, the short one between them.
+    poles = (
+        Pole("UP", 1, "L", "n2"),
+        Pole("UP", 2, "n2", "n3"),
+        Pole("UP", 3, "n3", "n1"),
+        Pole("DOWN", 1, "L", "n4"),
+        Pole("DOWN", 2, "n4", "n1"),
+        Pole("DOWN", 3, "L", "n5"),
+        Pole("DOWN", 4, "n5", "n6"),
+        Pole("DOWN", 5, "n6", "n1"),
+    )
+    network = Network(RELAYS, "L", {"LAMP": "n1"}, poles)
+    (wrong,) = prove(network, {"LAMP": Target(2, 0b0110)}, form="ladder").wrong
+    assert (wrong.row, wrong.path) == (
+        3,
+        ("supply", "DOWN:11", "DOWN:14", "DOWN:21", "DOWN:24", "LAMP"),
+    )
+
+
 def test_explain_shows_a_discharge_and_counts_what_it_leaves_out():
     star = Network(
         ("A",),
