@@ -160,8 +160,8 @@ def test_each_engine_is_met_in_one_module(engine):
     met = {
         module
         for module in MODULES
-        for source, _ in imports(module)
-        if source == engine or source.startswith(f"{engine}.")
+        for source, name in imports(module)
+        if f"{source}.{name}.".startswith(f"{engine}.")
     }
     assert len(met) <= 1
 
