@@ -259,5 +259,16 @@ def test_importing_any_library_module_loads_no_engine():
     assert not loaded_by(f"import {names}") & HEAVY
 
 
+@pytest.mark.parametrize("name", contactlogic.__all__)
+def test_public_names_stay_what_they_are(name):
+    # Loading a module binds its name in the package, over a public name spelt alike.
+    script = (
+        f"import contactlogic, types\nfirst = contactlogic.{name}\n"
+        f"assert first is contactlogic.{name}\nassert not isinstance(first, types.ModuleType)"
+    )
+    run = subprocess.run([sys.executable, "-c", script], capture_output=True, text=True)
+    assert run.returncode == 0, run.stderr
+
+
 def test_the_type_marker_is_shipped():
     assert (ROOT / "py.typed").is_file()
