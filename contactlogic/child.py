@@ -22,6 +22,8 @@ __all__ = ["ChildCrashed", "ChildTimedOut", "run"]
 
 _T = TypeVar("_T")
 
+_MARK = "contactlogic child 1"
+
 # Standard output is kept for the answer: whatever the engine prints there goes to standard error.
 _START = """
 import os, pickle, sys
@@ -75,9 +77,6 @@ def run(function: Callable[..., _T], *args: object, seconds: float) -> _T:
         raise ChildCrashed("answer is not the child's")
     answer: _T = value
     return answer
-
-
-_MARK = "contactlogic child 1"
 
 
 def _serve(seconds: float, work: bytes, answer: BinaryIO) -> None:

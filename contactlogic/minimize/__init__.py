@@ -1,9 +1,9 @@
 """Two-level covers of a load: sums of products and products of sums, free rows used.
 
 Up to 6 inputs the cover is always proved least (by literals, then terms); up to 10 inputs it is
-if the time suffices; otherwise the better of the engine's best so far, Espresso's and our own
-irredundant cover comes back, and `Cover.proved` is False.  Relays that neither the wanted nor the
-free rows depend on are set aside first and do not count as inputs.
+if the time suffices.  Otherwise the better of the engine's best so far and Espresso's cover, or
+else an irredundant cover of our own, comes back, and `Cover.proved` is False.  Relays that neither
+the wanted nor the free rows depend on are set aside first and do not count as inputs.
 
 Every engine's answer is checked against the target by the cubes' own truth tables; one that
 fails is thrown away, and an answer that is right always comes back.
@@ -17,7 +17,7 @@ from collections.abc import Iterable
 from contactlogic.errors import InternalError
 from contactlogic.minimize.cube import Cover, Cube, Group, Kind
 from contactlogic.minimize.heuristic import espresso, irredundant
-from contactlogic.minimize.least import EXACT_INPUTS, IN_PROCESS_INPUTS, Found, least
+from contactlogic.minimize.least import EXACT_INPUTS, IN_PROCESS_INPUTS, Found, find_least
 from contactlogic.truth import Target, depends_on
 
 __all__ = ["EXACT_INPUTS", "IN_PROCESS_INPUTS", "Cover", "Cube", "Group", "Kind", "cover", "covers"]
@@ -29,7 +29,8 @@ def cover(target: Target, kind: Kind, *, seconds: float = 30.0, seed: int = 0) -
     Args:
         target: what the load must do in each row.
         kind: "sop" or "pos".
-        seconds: time for the engines in all; none is taken from tables of up to 6 inputs.
+        seconds: time for the engines in all; tables of up to 6 inputs are solved whatever it is.
+            Reading and checking the answers, or our own cover, add a few seconds at 16 inputs.
         seed: the engine's.
     """
     return _best(target, kind, seconds, seed, 1)[0]
@@ -69,20 +70,20 @@ def _sums_of_products(target: Target, seconds: float, seed: int, alternatives: i
     candidates: list[tuple[Cube, ...]] = []
     if target.n <= EXACT_INPUTS:
         # a part of the time is kept for what must follow if there is no proof in time
-        found = least(target, seconds=seconds * 0.8, seed=seed, alternatives=alternatives)
+        found = find_least(target, seconds=seconds * 0.8, seed=seed, alternatives=alternatives)
         if found is not None:
             right = tuple(cubes for cubes in found.covers if target.accepts(_table(cubes, target)))
             if right and found.proved:
                 return Found(right, True)
             candidates.extend(right)
     quick = espresso(target, seconds=end - time.monotonic())
-    if quick is not None:
+    if quick is not None and target.accepts(_table(quick, target)):
         candidates.append(quick)
-    candidates.append(irredundant(target))
-    right = tuple(cubes for cubes in candidates if target.accepts(_table(cubes, target)))
-    if not right:
-        raise InternalError("no cover of a load passed its check")
-    return Found((min(right, key=_cost),), False)
+    if not candidates:
+        candidates.append(irredundant(target))
+        if not target.accepts(_table(candidates[0], target)):
+            raise InternalError("no cover of a load passed its check")
+    return Found((min(candidates, key=_cost),), False)
 
 
 def _table(cubes: Iterable[Cube], target: Target) -> int:

@@ -4,17 +4,21 @@ Espresso (Brayton, Hachtel, McMullen and Sangiovanni-Vincentelli, "Logic Minimiz
 for VLSI Synthesis", 1984) comes from pyeda and runs in a child, since it is native code that has
 no time limit of its own.  Our own cover always exists: the recursion of Minato ("Fast generation
 of irredundant sum-of-products forms from binary decision diagrams", 1992, after Morreale 1970) on
-truth tables, each cube then expanded until it is prime and cubes not needed dropped.  It is also
-what Espresso starts from, which spares it thousands of single rows.
+truth tables, each cube then expanded until it is prime and cubes not needed dropped.  Espresso is
+given that recursion's cubes of the on, free and off rows, which spares it thousands of single rows.
 """
 
 from __future__ import annotations
 
+import time
+from functools import cache
+from typing import Any
+
 from contactlogic.child import ChildCrashed, ChildTimedOut, run
 from contactlogic.minimize.cube import Cube
-from contactlogic.truth import Target, all_rows
+from contactlogic.truth import Target, all_rows, variable
 
-__all__ = ["espresso", "irredundant"]
+__all__ = ["cubes_of", "espresso", "irredundant", "run_espresso"]
 
 Pairs = tuple[tuple[int, int], ...]
 """Cubes as (care, value), plain for the way to the child and back."""
@@ -25,10 +29,11 @@ def espresso(target: Target, *, seconds: float) -> tuple[Cube, ...] | None:
 
     The answer is Espresso's word: callers check it against the target.
     """
+    end = time.monotonic() + seconds
     parts = (target.on, target.free, target.off)
-    lists = [_plain(_recursive(part, part, target.n)[0]) for part in parts]
+    lists = [_plain(cubes_of(Target(target.n, part))) for part in parts]
     try:
-        found = run(run_espresso, target.n, *lists, seconds=seconds)
+        found = run(run_espresso, target.n, *lists, seconds=end - time.monotonic())
         return tuple(Cube(care, value) for care, value in found)
     except (ChildTimedOut, ChildCrashed, ValueError):
         return None
@@ -62,66 +67,75 @@ def run_espresso(n: int, on: Pairs, free: Pairs, off: Pairs) -> Pairs:
 
 def irredundant(target: Target) -> tuple[Cube, ...]:
     """A sum of primes of `target` of which none can be left out."""
-    cubes, _ = _recursive(target.on, target.on | target.free, target.n)
+    import numpy
+
+    n = target.n
+    shape = (2,) * n  # one axis an input, the last input first
+
+    def grid(table: int) -> Any:
+        packed = numpy.frombuffer(table.to_bytes(max(1, 1 << n >> 3), "little"), numpy.uint8)
+        return numpy.unpackbits(packed, count=1 << n, bitorder="little").reshape(shape)
+
+    def place(cube: Cube) -> tuple[int | slice, ...]:
+        return tuple(
+            cube.value >> i & 1 if cube.care >> i & 1 else slice(None) for i in reversed(range(n))
+        )
+
     allowed = target.on | target.free
-    expanded = dict.fromkeys(_expand(cube, allowed, target.n) for cube in cubes)
-    return _drop_redundant(sorted(expanded, key=lambda c: (c.literals, c)), target)
-
-
-def _recursive(lower: int, upper: int, n: int) -> tuple[list[Cube], int]:
-    """Cubes that cover `lower` within `upper`, and their table, by splitting on the last input."""
-    if not lower:
-        return [], 0
-    if upper == all_rows(n):
-        return [Cube(0, 0)], upper
-    half = 1 << (n - 1)
-    mask = (1 << half) - 1
-    low0, low1, up0, up1 = lower & mask, lower >> half, upper & mask, upper >> half
-    cubes0, table0 = _recursive(low0 & ~up1, up0, n - 1)
-    cubes1, table1 = _recursive(low1 & ~up0, up1, n - 1)
-    both, table = _recursive(low0 & ~table0 | low1 & ~table1, up0 & up1, n - 1)
-    bit = 1 << (n - 1)
-    cubes = [Cube(c.care | bit, c.value) for c in cubes0]
-    cubes += [Cube(c.care | bit, c.value | bit) for c in cubes1]
-    return cubes + both, table0 | table | (table1 | table) << half
-
-
-def _expand(cube: Cube, allowed: int, n: int) -> Cube:
-    """Contacts dropped one by one, while every row stays allowed."""
-    table = cube.table(n)
+    spare = numpy.zeros(shape, numpy.uint32)  # per row: bit i if it may be left by moving relay i
     for i in range(n):
-        if cube.care >> i & 1:
-            step = 1 << i
-            wider = table | (table >> step if cube.value & step else table << step)
-            if not wider & ~allowed:
-                table = wider
-                cube = Cube(cube.care & ~step, cube.value & ~step)
-    return cube
+        spare |= grid(allowed & _moved(allowed, n, i)).astype(numpy.uint32) << i
+    primes: dict[Cube, None] = {}
+    for cube in cubes_of(target):
+        while droppable := int(numpy.bitwise_and.reduce(spare[place(cube)], axis=None)) & cube.care:
+            bit = droppable & -droppable
+            cube = Cube(cube.care & ~bit, cube.value & ~bit)
+        primes[cube] = None
+    times = numpy.zeros(shape, numpy.uint16)  # per row: by how many cubes it is covered
+    for cube in primes:
+        times[place(cube)] += 1
+    times[grid(target.on) == 0] = 2**16 - 1  # rows that need no cube, whatever is taken away
+    kept = []
+    for cube in sorted(primes, key=_order, reverse=True):  # many contacts are the first to go
+        if (times[place(cube)] > 1).all():
+            times[place(cube)] -= 1
+        else:
+            kept.append(cube)
+    return tuple(reversed(kept))
 
 
-def _drop_redundant(cubes: list[Cube], target: Target) -> tuple[Cube, ...]:
-    """Cubes of which none can be left out; those with many contacts go first."""
-    once = twice = 0
-    for cube in cubes:
-        table = cube.table(target.n) & target.on
-        twice |= once & table
-        once |= table
-    alone = once & ~twice
-    kept = [cube for cube in cubes if cube.table(target.n) & alone]
-    union = 0
-    for cube in kept:
-        union |= cube.table(target.n)
-    doubtful = [cube for cube in cubes if not cube.table(target.n) & alone]
-    needed: list[Cube] = []
-    before = [union]  # rows covered by the certain ones and the doubtful ones up to here
-    for cube in doubtful:
-        before.append(before[-1] | cube.table(target.n))
-    for cube, covered in zip(reversed(doubtful), reversed(before[:-1]), strict=True):
-        if cube.table(target.n) & target.on & ~(covered | union):
-            needed.append(cube)
-            union |= cube.table(target.n)
-    return tuple(sorted(kept + needed, key=lambda c: (c.literals, c)))
+def cubes_of(target: Target) -> tuple[Cube, ...]:
+    """An irredundant sum of products of `target`, by splitting on the last input."""
+
+    @cache  # parity and its like meet the same halves again and again
+    def split(lower: int, upper: int, n: int) -> tuple[tuple[Cube, ...], int]:
+        if not lower:
+            return (), 0
+        if upper == all_rows(n):
+            return (Cube(0, 0),), upper
+        half = 1 << (n - 1)
+        mask = (1 << half) - 1
+        low0, low1, up0, up1 = lower & mask, lower >> half, upper & mask, upper >> half
+        cubes0, table0 = split(low0 & ~up1, up0, n - 1)
+        cubes1, table1 = split(low1 & ~up0, up1, n - 1)
+        either, table = split(low0 & ~table0 | low1 & ~table1, up0 & up1, n - 1)
+        bit = 1 << (n - 1)
+        cubes = tuple(Cube(c.care | bit, c.value) for c in cubes0)
+        cubes += tuple(Cube(c.care | bit, c.value | bit) for c in cubes1)
+        return cubes + either, table0 | table | (table1 | table) << half
+
+    return split(target.on, target.on | target.free, target.n)[0]
 
 
-def _plain(cubes: list[Cube]) -> Pairs:
+def _moved(table: int, n: int, i: int) -> int:
+    """The rows of `table` after relay `i` moves."""
+    operated = table & variable(n, i)
+    return operated >> (1 << i) | (table ^ operated) << (1 << i)
+
+
+def _order(cube: Cube) -> tuple[int, Cube]:
+    return cube.literals, cube
+
+
+def _plain(cubes: tuple[Cube, ...]) -> Pairs:
     return tuple((cube.care, cube.value) for cube in cubes)

@@ -23,7 +23,7 @@ from contactlogic.minimize.cube import Cube
 from contactlogic.minimize.primes import primes
 from contactlogic.truth import Target
 
-__all__ = ["EXACT_INPUTS", "IN_PROCESS_INPUTS", "Found", "least"]
+__all__ = ["EXACT_INPUTS", "IN_PROCESS_INPUTS", "Found", "choose", "find_least"]
 
 IN_PROCESS_INPUTS = 6
 """Up to here the choice is made in this process, and without a time limit."""
@@ -43,7 +43,7 @@ class Found:
     proved: bool
 
 
-def least(target: Target, *, seconds: float, seed: int, alternatives: int = 1) -> Found | None:
+def find_least(target: Target, *, seconds: float, seed: int, alternatives: int = 1) -> Found | None:
     """Least sums of products of `target`, up to `alternatives` distinct ones; None if none in time.
 
     `seconds` bounds the engine above `IN_PROCESS_INPUTS` inputs, and below that only the search
