@@ -47,7 +47,7 @@ def guarded(*, keep: str, trace: bool = False) -> Iterator[None]:
         _say(str(error))
         raise typer.Exit(Status.INPUT) from None
     except KeyboardInterrupt:
-        _say("stopped; nothing was written")
+        _say("stopped")
         raise typer.Exit(Status.STOPPED) from None
     except BrokenPipeError:
         # Whoever read standard output has closed it; Python's own flush at exit must not fail.

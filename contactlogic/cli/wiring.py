@@ -40,7 +40,7 @@ def run(request: Request) -> None:
         InternalError: the proof failed; nothing was printed or written.
     """
     from contactlogic.report.folder import check_folder, write_folder
-    from contactlogic.wire import wire
+    from contactlogic.synthesis import wire
 
     job = _read(request)
     folder = request.out or Path(request.job.stem)
@@ -61,10 +61,11 @@ def run(request: Request) -> None:
 
     known = [facts(design) for design in result.designs]
     made = papers(result, known)
-    write_folder(folder, made.files, force=request.force)
+    said = summary(result, known, width=_width(), verbose=request.verbose)
+    write_folder(folder, made.files, force=request.force)  # last, so that a fault leaves nothing
     if request.quiet:
         return
-    sys.stdout.write(summary(result, known, width=_width(), verbose=request.verbose))
+    sys.stdout.write(said)
     for note in made.notes:
         print(f"note: {note}")
     print(f"written to {folder}: {', '.join(_tidy(made.files))}")

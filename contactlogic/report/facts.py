@@ -111,21 +111,23 @@ def constant(table: int, relays: int) -> str | None:
     return "always on" if table == all_rows(relays) else None
 
 
-def longest_runs(design: Design, *, work: int = 1_000_000) -> dict[str, Run]:
+def longest_runs(design: Design, *, work: int = 2_000_000) -> dict[str, Run]:
     """The longest run of contacts in series of each load, in the loads' order.
 
     Args:
-        work: how many net visits may be spent on one load (a million take about a second).
+        work: how many net visits may be spent, shared out evenly over the loads (a million take
+            about a second).
     """
     graph = _Graph(design.network)
     known: dict[str, Run] = {}
     runs: dict[str, Run] = {}
+    share = work // max(1, len(design.network.loads))
     for load, net in design.network.loads.items():
         if net is None or net == design.network.supply:
             runs[load] = Run(0)
             continue
         if net not in known:
-            known[net] = _Search(graph, net, work).run()
+            known[net] = _Search(graph, net, share).run()
         runs[load] = known[net]
     return runs
 

@@ -16,7 +16,7 @@ from typer.testing import CliRunner
 import contactlogic.draw
 import contactlogic.job
 import contactlogic.report.folder
-import contactlogic.wire
+import contactlogic.synthesis
 from contactlogic.cli import app
 from contactlogic.draw import RendererMissing
 from contactlogic.errors import ProofFailed
@@ -228,7 +228,7 @@ def test_verbose_tells_how_each_cover_was_found() -> None:
 def by_hand(here: Path, monkeypatch: pytest.MonkeyPatch) -> Path:
     """The command with a job and a result made by hand in place of the search."""
     monkeypatch.setattr(contactlogic.job, "load_job", lambda _path: SLUICE_JOB)
-    monkeypatch.setattr("contactlogic.wire.wire", lambda _job, **_options: SLUICE_RESULT)
+    monkeypatch.setattr("contactlogic.synthesis.wire", lambda _job, **_options: SLUICE_RESULT)
     return here
 
 
@@ -282,7 +282,7 @@ def test_without_a_renderer_the_text_of_the_drawing_is_written(
             "  please keep stairs.toml and report this; "
             "it is contactlogic's fault, not the job's\n",
         ),
-        (KeyboardInterrupt(), 130, "contactlogic: stopped; nothing was written\n"),
+        (KeyboardInterrupt(), 130, "contactlogic: stopped\n"),
     ],
 )
 @pytest.mark.parametrize("option", [[], ["--json"]])
@@ -297,7 +297,7 @@ def test_faults_print_no_design(
     def wire(*_: object, **__: object) -> None:
         raise error
 
-    monkeypatch.setattr("contactlogic.wire.wire", wire)
+    monkeypatch.setattr("contactlogic.synthesis.wire", wire)
     ran = CliRunner().invoke(app, ["wire", "stairs.toml", *option])
     assert (ran.exit_code, ran.stderr, ran.stdout) == (status, message, "")
     assert _files(by_hand) == ["stairs.toml"]
