@@ -19,7 +19,7 @@ if TYPE_CHECKING:
     from contactlogic.job.model import Job, Limits, Load, SeparateContacts, Supply
     from contactlogic.network import Network, Pole
     from contactlogic.truth import Target
-    from contactlogic.wire import wire
+    from contactlogic.synthesis import wire
 
 __all__ = [
     "Bound",
@@ -60,7 +60,7 @@ _HOME = {
     "load_job": "job",
     "load_table_job": "job",
     "verify": "check",
-    "wire": "wire",
+    "wire": "synthesis",
 }
 
 
