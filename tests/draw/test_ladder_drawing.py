@@ -2,26 +2,19 @@
 
 from __future__ import annotations
 
-import sys
 from itertools import combinations
-from pathlib import Path
 
 import pytest
+from draw.ladder_examples import EXAMPLES, KINDS, out_of_reach, sluice, staircase
+from draw.ladder_networks import ladder_networks
+from draw.reading import Netlist, Reader, Reading, crosses, overlap, read
 from hypothesis import given, settings
 
-sys.path.insert(0, str(Path(__file__).parent))
-
-from ladder_examples import EXAMPLES, KINDS
-from ladder_networks import ladder_networks
-from reading import Netlist, Reader, Reading, crosses, overlap, read
-
 from contactlogic.design import fingerprint
-from contactlogic.draw import ladder_drawing
+from contactlogic.draw import NotALadder, ladder_drawing
 from contactlogic.job.model import Supply
-from contactlogic.network import Network
+from contactlogic.network import Network, Pole
 from contactlogic.terminals import RETURN, wire_numbers
-
-GOLDEN = Path(__file__).parent / "golden"
 
 
 def drawing_of(network: Network, title: str = "Sluice house") -> str:
@@ -100,3 +93,77 @@ def test_any_ladder_reads_back_as_its_network(network: Network) -> None:
     reading = read(drawing_of(network))
     assert_reads_back(network, reading)
     assert_nothing_collides(reading)
+
+
+def test_all_exits_are_drawn_without_a_reference_where_that_is_possible() -> None:
+    """Two branches with a tap each can be drawn flat, by taking a tap as the rung's own load."""
+    network = Network(
+        ("A", "B", "C", "D"),
+        "L",
+        {"X": "x", "Y": "p", "Z": "q"},
+        (
+            Pole("A", 1, "L", "p"),
+            Pole("B", 1, "p", "x"),
+            Pole("C", 1, "L", "q"),
+            Pole("D", 1, "q", "x"),
+        ),
+    )
+    reading = read(drawing_of(network))
+    assert_reads_back(network, reading)
+    assert not any("from rung" in label.text for label in reading.labels)
+
+
+def test_a_tap_out_of_reach_refers_to_its_wire() -> None:
+    """Feed, three joints, their common end and the return rail hold a K3,3, so no flat drawing."""
+    network = out_of_reach()
+    texts = [label.text for label in read(drawing_of(network)).labels]
+    (source,) = [text for text in texts if text.endswith(" to rung 4")]
+    number = source.split()[0]
+    assert f"wire {number}" in texts
+    assert "from rung 1" in texts
+
+
+def test_blades_move_the_same_way() -> None:
+    """An open make hangs below the wire and closes upwards; a closed break opens upwards."""
+    for network in (sluice(), staircase()):
+        for kind, a, b, weight in read(drawing_of(network)).lines:
+            if kind == "symbol" and weight == 1.7:
+                assert a[1] != b[1]
+        found = Reader(read(drawing_of(network))).netlist()
+        throws = {(c.throw[0][-1], c.make) for c in found.contacts}
+        assert throws == {("4", True), ("2", False)}  # EN 50005: make on 4, break on 2
+
+
+def test_a_tall_ladder_is_split_into_panels() -> None:
+    reading = read(drawing_of(EXAMPLES["large"]()))
+    rails = {line[0][0] for line in reading.of("rail")}
+    assert len(rails) == 4
+    assert max(reading.size) / min(reading.size) < 1.6
+
+
+@pytest.mark.parametrize(
+    ("poles", "loads", "said"),
+    [
+        ((Pole("A", 1, "L", "x"), Pole("B", 1, "x", "y")), {"X": "x"}, "no load is fed through B"),
+        ((Pole("A", 1, "L", "x"), Pole("B", 1, "u", "v")), {"X": "x"}, "B 1 has no supply"),
+        ((Pole("A", 1, "L", "x"),), {"X": "x", "Y": "y"}, "load Y hangs on net y"),
+        ((Pole("A", 1, "L", "x"), Pole("B", 1, "x", "x")), {"X": "x"}, "joins a net to itself"),
+        (
+            (
+                Pole("A", 1, "L", "p"),
+                Pole("A", 2, "L", "q"),
+                Pole("B", 1, "p", "q"),
+                Pole("B", 2, "p", "x"),
+                Pole("B", 3, "q", "x"),
+            ),
+            {"X": "x"},
+            "not series-parallel",
+        ),
+    ],
+)
+def test_what_is_no_ladder_is_refused(
+    poles: tuple[Pole, ...], loads: dict[str, str | None], said: str
+) -> None:
+    network = Network(("A", "B"), "L", loads, poles)
+    with pytest.raises(NotALadder, match=said):
+        drawing_of(network)
