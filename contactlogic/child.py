@@ -1,4 +1,4 @@
-"""Runs a function in a process of its own, with a hard time limit.
+"""Runs a function in a process of its own: `run` once with a time limit, `Stream` as it goes.
 
 Native engines can hang, crash the process they run in, or print.  In a child none of that can
 take the caller's result with it: the child is killed when its time is up, an end by signal or
@@ -15,12 +15,18 @@ import os
 import pickle
 import subprocess
 import sys
-from collections.abc import Callable
+from collections.abc import Callable, Iterator
+from dataclasses import dataclass
+from queue import Queue
+from threading import Thread
 from typing import BinaryIO, TypeVar
 
-__all__ = ["ChildCrashed", "ChildTimedOut", "run"]
+__all__ = ["ChildCrashed", "ChildTimedOut", "Event", "Stream", "run"]
 
 _T = TypeVar("_T")
+
+Inbox = Queue["Event"]
+"""Where the events of streams arrive."""
 
 _MARK = "contactlogic child 1"
 
@@ -30,8 +36,8 @@ import os, pickle, sys
 answer = os.fdopen(os.dup(1), "wb")
 os.dup2(2, 1)
 sys.path[:], seconds, work = pickle.load(sys.stdin.buffer)
-from contactlogic.child import _serve
-_serve(seconds, work, answer)
+from contactlogic.child import {serve}
+{serve}(seconds, work, answer)
 """
 
 
@@ -41,6 +47,10 @@ class ChildTimedOut(Exception):
 
 class ChildCrashed(Exception):
     """The child ended without an answer: by a signal, an exception, or with garbage."""
+
+
+def _command(serve: str) -> list[str]:
+    return [sys.executable, "-P", "-c", _START.replace("{serve}", serve)]
 
 
 def run(function: Callable[..., _T], *args: object, seconds: float) -> _T:
@@ -57,7 +67,7 @@ def run(function: Callable[..., _T], *args: object, seconds: float) -> _T:
     work = pickle.dumps((function, args))
     try:
         done = subprocess.run(
-            [sys.executable, "-P", "-c", _START],
+            _command("_serve"),
             input=pickle.dumps((sys.path, seconds, work)),
             capture_output=True,
             timeout=seconds,
@@ -90,4 +100,82 @@ def _serve(seconds: float, work: bytes, answer: BinaryIO) -> None:
     value = function(*args)
     with answer as out:
         pickle.dump((_MARK, value), out)
+    os._exit(0)
+
+
+@dataclass(frozen=True)
+class Event:
+    """Something a `Stream` has to say: a value, or its end and, if it failed, how."""
+
+    name: int
+    value: object = None
+    ended: bool = False
+    failure: str | None = None
+
+
+class Stream:
+    """A generator function worked through in a child; its values arrive in `inbox` as `Event`s.
+
+    The child ignores Ctrl-C, so that the caller decides what becomes of it; `close` ends it at
+    once.  A child that crashes ends its stream with a failure and touches nothing else.
+
+    Args:
+        function: a module's top-level generator function; arguments and values can be pickled.
+        inbox: queue that the events of any number of streams go to.
+        name: number that tells this stream's events apart.
+    """
+
+    def __init__(
+        self, function: Callable[..., Iterator[object]], *args: object, inbox: Inbox, name: int
+    ) -> None:
+        self._process = subprocess.Popen(
+            _command("_serve_stream"),
+            stdin=subprocess.PIPE,
+            stdout=subprocess.PIPE,
+            stderr=subprocess.DEVNULL,
+        )
+        assert self._process.stdin is not None
+        pickle.dump((sys.path, 0.0, pickle.dumps((function, args))), self._process.stdin)
+        self._process.stdin.close()
+        self._reader = Thread(target=self._read, args=(inbox, name), daemon=True)
+        self._reader.start()
+
+    def _read(self, inbox: Inbox, name: int) -> None:
+        assert self._process.stdout is not None
+        failure: str | None = None
+        try:
+            while True:
+                mark, value = pickle.load(self._process.stdout)
+                if mark != _MARK:
+                    failure = "an answer is not the child's"
+                    break
+                inbox.put(Event(name, value))
+        except EOFError:
+            pass
+        except Exception as error:  # a pickle cut short or overwritten can raise nearly anything
+            failure = f"an answer cannot be read: {error}"
+        status = self._process.wait() if failure is None else None
+        if status:
+            failure = f"ended by signal {-status}" if status < 0 else f"ended by status {status}"
+        inbox.put(Event(name, ended=True, failure=failure))
+
+    def close(self) -> None:
+        """End the child at once; events under way may still arrive."""
+        self._process.kill()
+        self._process.wait()
+        self._reader.join(timeout=1.0)
+        if self._process.stdout is not None:
+            self._process.stdout.close()
+
+
+def _serve_stream(_seconds: float, work: bytes, answer: BinaryIO) -> None:
+    """The child's side of a stream: send each value as it comes."""
+    import signal
+
+    signal.signal(signal.SIGINT, signal.SIG_IGN)
+    function, args = pickle.loads(work)
+    with answer as out:
+        for value in function(*args):
+            pickle.dump((_MARK, value), out)
+            out.flush()
     os._exit(0)

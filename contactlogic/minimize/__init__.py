@@ -69,8 +69,9 @@ def _sums_of_products(target: Target, seconds: float, seed: int, alternatives: i
     end = time.monotonic() + seconds
     candidates: list[tuple[Cube, ...]] = []
     if target.n <= EXACT_INPUTS:
-        # a part of the time is kept for what must follow if there is no proof in time
-        found = find_least(target, seconds=seconds * 0.8, seed=seed, alternatives=alternatives)
+        # some time is kept for Espresso, should there be no proof in time
+        limit = seconds - min(2.0, 0.2 * seconds)
+        found = find_least(target, seconds=limit, seed=seed, alternatives=alternatives)
         if found is not None:
             right = tuple(cubes for cubes in found.covers if target.accepts(_table(cubes, target)))
             if right and found.proved:
