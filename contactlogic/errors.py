@@ -9,7 +9,9 @@
     │   │   └── LimitError         too many inputs, a pole budget that cannot be met
     │   ├── DesignFileError        a design.json that does not keep the contract
     │   └── OutputError            a folder that cannot or must not be written
-    ├── RenderError                the renderer failed or is missing
+    ├── NotALadder                 a network that cannot be drawn as a ladder
+    ├── RenderError                the renderer failed
+    │   └── RendererMissing        no renderer is installed
     └── InternalError              contactlogic broke its own promise; no design is given out
         └── ProofFailed            a finished network failed its own proof
 
@@ -30,10 +32,12 @@ __all__ = [
     "JobError",
     "JobFileError",
     "LimitError",
+    "NotALadder",
     "OutputError",
     "Place",
     "ProofFailed",
     "RenderError",
+    "RendererMissing",
     "TableError",
 ]
 
@@ -140,8 +144,16 @@ class OutputError(InputError):
     """An output folder that cannot be written, or holds other files."""
 
 
+class NotALadder(ContactLogicError):
+    """A network that does not keep the ladder definition, so that it has no ladder drawing."""
+
+
 class RenderError(ContactLogicError):
     """The drawing's text was made but no renderer could turn it into a picture."""
+
+
+class RendererMissing(RenderError):
+    """No renderer is installed; the drawing's text can still be kept."""
 
 
 class InternalError(ContactLogicError):

@@ -7,12 +7,11 @@ from collections.abc import Collection, Mapping
 from contactlogic.design import Design
 from contactlogic.draw.arrange import SheetFacts, arrange
 from contactlogic.draw.dot import dot_text
-from contactlogic.draw.render import RendererMissing, render
-from contactlogic.draw.rungs import NotALadder
+from contactlogic.draw.render import render
 from contactlogic.job.model import LoadKind, Supply
 from contactlogic.network import Network
 
-__all__ = ["NotALadder", "RendererMissing", "draw_ladder", "ladder_drawing", "render"]
+__all__ = ["draw_ladder", "ladder_drawing", "render"]
 
 
 def ladder_drawing(

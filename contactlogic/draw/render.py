@@ -13,15 +13,11 @@ import sys
 from collections.abc import Sequence
 from pathlib import Path
 
-from contactlogic.errors import RenderError
+from contactlogic.errors import RendererMissing, RenderError
 
-__all__ = ["RendererMissing", "find_renderer", "render"]
+__all__ = ["find_renderer", "render"]
 
 PNG_DPI = 110
-
-
-class RendererMissing(RenderError):
-    """No renderer is installed; the drawing's text can still be kept."""
 
 
 def find_renderer() -> str | None:

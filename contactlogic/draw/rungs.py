@@ -18,13 +18,10 @@ from __future__ import annotations
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, field
 
+from contactlogic.errors import NotALadder
 from contactlogic.network import Contact, Network
 
-__all__ = ["Leaf", "NotALadder", "Parallel", "Part", "Rung", "Series", "rungs_of"]
-
-
-class NotALadder(ValueError):
-    """The network does not keep the ladder definition, so it has no ladder drawing."""
+__all__ = ["Leaf", "Parallel", "Part", "Rung", "Series", "rungs_of"]
 
 
 @dataclass(frozen=True)

@@ -11,7 +11,8 @@ from draw.reading import Netlist, Reader, Reading, crosses, overlap, read
 from hypothesis import given, settings
 
 from contactlogic.design import fingerprint
-from contactlogic.draw import NotALadder, ladder_drawing
+from contactlogic.draw import ladder_drawing
+from contactlogic.errors import NotALadder
 from contactlogic.job.model import Supply
 from contactlogic.network import Network, Pole
 from contactlogic.terminals import RETURN, wire_numbers

@@ -15,9 +15,9 @@ from draw.ladder_examples import EXAMPLES, KINDS, ladder, out_of_reach, sluice, 
 from draw.reading import read
 
 from contactlogic.design import fingerprint
-from contactlogic.draw import RendererMissing, ladder_drawing, render
+from contactlogic.draw import ladder_drawing, render
 from contactlogic.draw.render import find_renderer
-from contactlogic.errors import RenderError
+from contactlogic.errors import RendererMissing, RenderError
 from contactlogic.job.model import Supply
 from contactlogic.network import Network
 
