@@ -22,7 +22,8 @@ __all__ = ["Lettering", "Panel", "SheetFacts"]
 _NAME_SIZES = (12.0, 10.5, 9.0)  # long names are set smaller before they are shortened
 _RAIL, _NUMBER, _MARK, _NOTE, _RUNG = 12.0, 8.5, 8.0, 8.0, 11.0
 _NAME_ROOM = 150.0
-_NAME_RISE, _LABEL_RISE, _NOTE_DROP, _RUNG_LEFT = 28.0, 6.5, 20.0, 28.0
+_NAME_RISE, _LABEL_RISE, _RUNG_LEFT = 28.0, 6.5, 28.0
+_NOTE_DROP = {True: 18.0, False: 11.0}  # below the hanging blade of a make; close to a break
 _ABOVE = 36.0
 _MARGIN = 56.0
 _EASE = 28.0  # most room added on either side of a border where the sheet has some to spare
@@ -122,7 +123,8 @@ class Panel:
         below = dict.fromkeys(range(len(self.rows)), 12.0)
         for cell in self.cells:
             if self.lettering.note(cell):
-                below[cell.row - self.first] = 25.0
+                at = cell.row - self.first
+                below[at] = max(below[at], 8.0 + _NOTE_DROP[cell.leaf.contact.make])
         self.rail_top = 46.0
         y = self.rail_top + 6
         self.y: dict[int, float] = {}
@@ -215,7 +217,7 @@ class Panel:
             offset = symbols.CONTACT_HALF + gap + text_width(mark, _MARK) / 2
             pen.text((x + way * offset, y - _LABEL_RISE), mark, _MARK)
         pen.texts.append(replace(self.lettering.name(contact.relay), at=(x, y - _NAME_RISE)))
-        pen.text((x, y + _NOTE_DROP), self.lettering.note(cell), _NOTE, colour=GREY)
+        pen.text((x, y + _NOTE_DROP[contact.make]), self.lettering.note(cell), _NOTE, colour=GREY)
         half = symbols.CONTACT_HALF
         return _PlacedContact(cell, (x - half, y), (x + half, y))
 

@@ -62,19 +62,9 @@ def draw_table(
     right = left + room
     names = short_names((row.relay for row in rows), 0.28 * room, _SIZE)
     name_wide = max([text_width(text, _SIZE) for text in names.values()] + [40])
-    terminals = [wrap(row.terminals or ("-",), " / ", 0.26 * room, _SIZE) for row in rows]
-    wide = max([text_width(line, _SIZE) for lines in terminals for line in lines] + [50])
-    place_room = room - name_wide - wide - 40 - 4 * 20
-    places = [
-        wrap(
-            row.places or ("not used",),
-            "; " if any("(" in place for place in row.places) else ", ",
-            place_room,
-            _SIZE,
-        )
-        for row in rows
-    ]
-    place_wide = max([text_width(line, _SIZE) for lines in places for line in lines] + [60])
+    cells = [_cells(row, 0.26 * room, 0.72 * room - name_wide - 120) for row in rows]
+    wide = max([text_width(line, _SIZE) for lines, _ in cells for line in lines] + [50])
+    place_wide = max([text_width(line, _SIZE) for _, lines in cells for line in lines] + [60])
     gap = (room - name_wide - wide - place_wide - 40) / 4
     at = [left + gap / 2 + name_wide / 2]
     at.append(at[0] + name_wide / 2 + gap + wide / 2)
@@ -84,12 +74,22 @@ def draw_table(
     for x, heading in zip(at, _HEADINGS, strict=True):
         pen.text((x, y), heading, _SIZE, bold=True)
     y += 18
-    for row, marks, stands in zip(rows, terminals, places, strict=True):
+    for row, (marks, stands) in zip(rows, cells, strict=True):
         for x, lines in zip(at, ([names[row.relay]], marks, stands, [str(row.poles)]), strict=True):
             for i, line in enumerate(lines):
                 pen.text((x, y + i * _PITCH), line, _SIZE)
         y += _PITCH * max(len(marks), len(stands), 1) + 4
     return y
+
+
+def _cells(row: TableRow, wide: float, place_wide: float) -> tuple[list[str], list[str]]:
+    """Lines of the two middle columns: on one line if they fit, else changeovers pole by pole."""
+    changeovers = any("(" in place for place in row.places)
+    places = wrap(row.places or ("not used",), "; " if changeovers else ", ", place_wide, _SIZE)
+    terminals = wrap(row.terminals or ("-",), " / ", wide, _SIZE)
+    if changeovers and (len(places) > 1 or len(terminals) > 1):
+        return list(row.terminals), list(row.places)
+    return terminals, places
 
 
 def draw_footer(

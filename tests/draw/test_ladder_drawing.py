@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections import Counter
 from itertools import combinations
 
 import pytest
@@ -60,6 +61,9 @@ def assert_nothing_collides(reading: Reading) -> None:
     wires = reading.of("wire", "rail")
     rails = set(reading.of("rail"))
     reader = Reader(reading)
+    ends = Counter(point for line in reading.of("wire") for point in line)
+    dots = {centre for centre, _, filled in reading.circles if filled}
+    assert dots == {point for point, count in ends.items() if count > 2}
     for (i, one), (j, other) in combinations(enumerate(wires), 2):
         if reader.group[i] != reader.group[j]:
             assert not crosses(one, other), (one, other)

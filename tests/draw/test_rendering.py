@@ -202,3 +202,11 @@ def test_the_environments_own_renderer_comes_first(
     assert find_renderer() == str(tmp_path / "system/graphviz-pure")
     (tmp_path / "system/graphviz-pure").unlink()
     assert find_renderer() == str(tmp_path / "system/dot")
+
+
+def test_many_changeovers_are_listed_pole_by_pole() -> None:
+    height = {}
+    for label in read(drawn(EXAMPLES["one_of_ten"]())).labels:
+        height.setdefault(label.text, set()).add(label.at[1])
+    # pole 4 of R1 feeds LAMP0 on its break and LAMP1 on its make: rungs 1 and 2
+    assert height["41 42 44"] == height["make rung 2, break rung 1 (one changeover)"]
