@@ -24,6 +24,7 @@ _RAIL, _NUMBER, _MARK, _NOTE, _RUNG = 12.0, 8.5, 8.0, 8.0, 11.0
 _NAME_ROOM = 150.0
 _NAME_RISE, _LABEL_RISE, _RUNG_LEFT = 28.0, 6.5, 28.0
 _NOTE_DROP = {True: 18.0, False: 11.0}  # below the hanging blade of a make; close to a break
+_NEVER = "never on: left unwired"
 _ABOVE = 36.0
 _MARGIN = 56.0
 _EASE = 28.0  # most room added on either side of a border where the sheet has some to spare
@@ -157,6 +158,9 @@ class Panel:
                 )
         if any(isinstance(row, RungRow) and row.rung.reference for row in self.rows):
             before[0] = max(before[0], text_width(f"from rung {len(text.grid.rows)}", _NOTE) + 24)
+        if any(isinstance(row, RungRow) and row.rung.net is None for row in self.rows):
+            short = text_width(_NEVER, _NOTE) + 30 - sum(box) - sum(before) - sum(after)
+            after[-1] += max(0.0, short)
         load_box = 2 * (symbols.LOAD_HALF + 6 + text_width("X1", _MARK))
         for row in self.rows:
             if isinstance(row, RungRow):
@@ -231,9 +235,8 @@ class Panel:
         pen.texts.append(replace(self.lettering.name(name), at=(x, y - _NAME_RISE)))
         pen.text((self.left_rail - _RUNG_LEFT, y), str(row.number), _RUNG, colour=GREY)
         if row.rung.net is None:
-            note = "never on: left unwired"
-            at = x - half - 24 - text_width(note, _NOTE) / 2
-            pen.text((at, y), note, _NOTE, colour=GREY)
+            at = x - half - 24 - text_width(_NEVER, _NOTE) / 2
+            pen.text((at, y), _NEVER, _NOTE, colour=GREY)
         return _PlacedLoad((x - half, y), (x + half, y))
 
     def _segments(self, contacts: list[_PlacedContact], loads: list[_PlacedLoad]) -> list[Segment]:

@@ -137,6 +137,11 @@ def constants() -> Network:
     return ladder("KEY", [], {"PILOT": "L", "ALARM": None})
 
 
+def unwired() -> Network:
+    """Many loads that are never on, enough for panels without any contact."""
+    return ladder("KEY", [], {f"LAMP{i}": None for i in range(12)} | {"PILOT": "L"})
+
+
 def long_series() -> Network:
     """Twelve contacts in series."""
     names = " ".join(f"K{i}" for i in range(1, 13))
@@ -162,6 +167,7 @@ EXAMPLES = {
         large,
         single,
         constants,
+        unwired,
         long_series,
     )
 }
