@@ -173,7 +173,7 @@ def test_text_that_is_no_drawing_is_a_render_error() -> None:
 
 def test_time_limit(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
     slow = tmp_path / "graphviz-pure"
-    slow.write_text("#!/bin/sh\nexec sleep 30\n")
+    slow.write_text(f"#!{sys.executable}\nimport time\ntime.sleep(30)\n")
     slow.chmod(0o755)
     monkeypatch.setattr(sys, "executable", str(tmp_path / "python"))
     with pytest.raises(RenderError, match=r"within 0\.2 s"):
