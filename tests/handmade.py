@@ -50,7 +50,7 @@ SLUICE_DESIGN = Design(
 SLUICE_RESULT = Result(SLUICE_JOB, (SLUICE_DESIGN,), SLUICE_JOB.relays)
 
 SLUICE_FACTS = Facts(
-    {"LAMP": "UP DOWN' + FLOOD", "HORN": "UP' DOWN"},
+    {"LAMP": "FLOOD + UP DOWN'", "HORN": "UP' DOWN"},
     as_built(SLUICE_NETWORK),
     longest_runs(SLUICE_DESIGN),
 )

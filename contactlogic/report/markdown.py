@@ -7,6 +7,7 @@ becomes real behaviour once the wiring exists, so each one in which a load is on
 from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
+from pathlib import Path
 
 from contactlogic.design import Design, Result
 from contactlogic.job.model import Job
@@ -49,10 +50,11 @@ def _asked(job: Job) -> list[str]:
     """What the job states: rails, loads, limits."""
     rows = 1 << len(job.relays)
     listed = job.listed.bit_count()
+    file = Path(job.file).name if job.file else None  # wherever it lay, the report is the same
     lines = [
         "## What was asked",
         "",
-        f"- job file: {markdown(not_given(job.file))}",
+        f"- job file: {markdown(not_given(file))}",
         f"- input relays: {', '.join(map(markdown, job.relays)) or 'none'}",
         f"- rows: {rows}, of them {listed} listed and {rows - listed} unlisted",
         f"- supply, feed: {markdown(not_given(job.supply.feed))}",

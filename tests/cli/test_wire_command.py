@@ -18,8 +18,7 @@ import contactlogic.job
 import contactlogic.report.folder
 import contactlogic.synthesis
 from contactlogic.cli import app
-from contactlogic.draw import RendererMissing
-from contactlogic.errors import ProofFailed
+from contactlogic.errors import ProofFailed, RendererMissing
 
 STAIRS = """\
 title = "Stairs"
