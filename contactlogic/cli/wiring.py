@@ -10,10 +10,12 @@ from pathlib import Path
 
 from contactlogic.errors import JobFileError, Place
 from contactlogic.job.model import Job
+from contactlogic.job.table import Unlisted
 
 __all__ = ["Request", "run"]
 
 _TABLES = (".csv", ".xlsx")
+_UNLISTED: dict[str, Unlisted] = {"off": "off", "free": "free"}
 
 
 @dataclass(frozen=True)
@@ -97,10 +99,12 @@ def _read(request: Request) -> Job:
     return load_job(request.job)
 
 
-def _unlisted(request: Request) -> str | None:
-    if request.unlisted not in (None, "off", "free"):
+def _unlisted(request: Request) -> Unlisted | None:
+    if request.unlisted is None:
+        return None
+    if request.unlisted not in _UNLISTED:
         raise JobFileError(f"--unlisted {request.unlisted} is not known", expected="off or free")
-    return request.unlisted
+    return _UNLISTED[request.unlisted]
 
 
 def _width() -> int | None:
