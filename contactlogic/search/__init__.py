@@ -1,0 +1,1 @@
+"""Searching two-directional networks: exactly by SAT, and by windows from good starts."""
