@@ -44,13 +44,12 @@ ENGINES = (
     "graphviz",
     "lark",
     "openpyxl",
-    "pydantic",
 )
 """Third-party engines; each is met in one module, so that it can be exchanged there."""
 
 HEAVY = {
     *(engine.split(".")[0] for engine in ENGINES),
-    *("networkx", "numpy", "pandas", "rich", "sympy", "typer"),
+    *("networkx", "numpy", "pandas", "pydantic", "rich", "sympy", "typer"),
 }
 """What takes long to load; only functions that need it import it."""
 
