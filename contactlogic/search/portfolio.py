@@ -14,8 +14,9 @@ from queue import Empty, Queue
 from time import monotonic
 
 from contactlogic.child import Event, Stream
+from contactlogic.search.goal import Goal
 from contactlogic.search.mesh import Mesh
-from contactlogic.search.windows import Found, Goal, cost, wander
+from contactlogic.search.windows import Found, wander
 
 __all__ = ["Errand", "Progress", "Standing", "explore"]
 
@@ -102,7 +103,9 @@ def explore(
                 event = None
             if event is not None and event.name in running:
                 walker, stream = running[event.name]
-                state[walker.errand] = _heard(state[walker.errand], event, seen)
+                state[walker.errand] = _heard(
+                    errands[walker.errand].goal, state[walker.errand], event, seen
+                )
                 if event.ended:
                     stream.close()
                     del running[event.name]
@@ -128,7 +131,7 @@ def _walkers(
     ]
 
 
-def _heard(standing: Standing, event: Event, seen: dict[int, int]) -> Standing:
+def _heard(goal: Goal, standing: Standing, event: Event, seen: dict[int, int]) -> Standing:
     if event.ended:
         return replace(standing, crashed=standing.crashed + (event.failure is not None))
     found = event.value
@@ -137,12 +140,12 @@ def _heard(standing: Standing, event: Event, seen: dict[int, int]) -> Standing:
     windows = standing.windows + found.windows - seen.get(event.name, 0)
     seen[event.name] = found.windows
     best = standing.best
-    if found.best is not None and (best is None or _key(found.best) < _key(best)):
+    if found.best is not None and (best is None or _key(goal, found.best) < _key(goal, best)):
         best = found.best
     return replace(standing, best=best, windows=windows)
 
 
-def _key(mesh: Mesh) -> tuple[object, ...]:
+def _key(goal: Goal, mesh: Mesh) -> tuple[object, ...]:
     """Cost, then the wiring itself, so that the order in which walkers finish does not matter."""
     order = tuple(tuple(-1 if net is None else net for net in pole) for pole in mesh.poles)
-    return (*cost(mesh), order)
+    return (*goal.cost(mesh), order)

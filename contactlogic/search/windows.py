@@ -10,80 +10,23 @@ Every network that `Walk` holds has been checked over all rows by bit-parallel c
 
 from __future__ import annotations
 
-from collections import Counter
-from collections.abc import Iterator, Mapping, Sequence
-from dataclasses import dataclass, field
+from collections.abc import Iterator, Sequence
+from dataclasses import dataclass
 from itertools import count
 from random import Random
 
-from contactlogic.ladder.recognise import series_parallel
-from contactlogic.network import back_feeds
 from contactlogic.search.encoding import Ends, Row
-from contactlogic.search.mesh import SUPPLY, Mesh, live_rows, to_network, trim
+from contactlogic.search.goal import Goal
+from contactlogic.search.mesh import SUPPLY, Mesh, live_rows, trim
 from contactlogic.search.resynthesis import WindowProblem, resynthesise
-from contactlogic.truth import Target
 
-__all__ = ["Found", "Goal", "Walk", "cost", "wander"]
+__all__ = ["Found", "Walk", "wander"]
 
 _CONFLICTS = 2000  # for one question; windows that need more are left
 _PATIENCE = 12  # windows without gain, for each pole, before a walk starts afresh
 _POLISH = 15  # windows for ties once the poles are known to be fewest
 _SIGN_OF_LIFE = 10  # windows between signs of life
 _TRIES = 6  # different answers looked at where a filter may reject them
-
-
-@dataclass(frozen=True)
-class Goal:
-    """What a mesh must do and keep to; loads in the order of `Mesh.feeds`, all by number.
-
-    Args:
-        n: number of relays.
-        targets: what each load must do.
-        ladder: whether every load's paths must be series-parallel.
-        isolated: loads that may not be joined to another load that is off, while off themselves.
-        separate: relays whose makes and breaks never pair, with the most of each.
-        budgets: most poles of a relay.
-    """
-
-    n: int
-    targets: tuple[Target, ...]
-    ladder: bool = False
-    isolated: frozenset[int] = frozenset()
-    separate: Mapping[int, tuple[int, int]] = field(default_factory=dict)
-    budgets: Mapping[int, int] = field(default_factory=dict)
-
-    def accepts(self, mesh: Mesh) -> bool:
-        """Whether a mesh does all this, every row checked."""
-        use = Counter(pole.relay for pole in mesh.poles)
-        if any(use[relay] > most for relay, most in self.budgets.items()):
-            return False
-        for relay, (makes, breaks) in self.separate.items():
-            own = [pole for pole in mesh.poles if pole.relay == relay]
-            if any(None not in (pole.make, pole.break_) for pole in own):
-                return False
-            if sum(p.make is not None for p in own) > makes:
-                return False
-            if sum(p.break_ is not None for p in own) > breaks:
-                return False
-        live = live_rows(mesh.poles, self.n)
-        for feed, target in zip(mesh.feeds, self.targets, strict=True):
-            if not target.accepts(0 if feed is None else live.get(feed, 0)):
-                return False
-        if not (self.isolated or self.ladder):
-            return True
-        relays = tuple(f"R{k}" for k in range(self.n))
-        loads = tuple(f"Z{k}" for k in range(len(self.targets)))
-        network = to_network(mesh, relays, loads)
-        if self.isolated and back_feeds(network, [loads[k] for k in self.isolated]):
-            return False
-        return not self.ladder or series_parallel(network)
-
-
-def cost(mesh: Mesh) -> tuple[int, int, int, int]:
-    """Poles, busiest relay, springs, nets: the order of section 4."""
-    use = Counter(pole.relay for pole in mesh.poles)
-    springs = sum(2 if None in (pole.make, pole.break_) else 3 for pole in mesh.poles)
-    return len(mesh.poles), max(use.values(), default=0), springs, len(mesh.nets())
 
 
 class Walk:
@@ -114,7 +57,7 @@ class Walk:
             found = self._resynthesise(chosen, len(chosen))
         if found is not None:
             self.here = found
-            if cost(found) < cost(self.best):
+            if self.goal.cost(found) < self.goal.cost(self.best):
                 self.best = found
 
     def _choose(self, size: int) -> list[int]:
@@ -140,7 +83,7 @@ class Walk:
             len(relays),
             len(nets),
             tuple(self._rows(rest, nets, relays)),
-            frozenset(k for k, relay in enumerate(relays) if relay in goal.separate),
+            frozenset(k for k, r in enumerate(relays) if goal.singly or r in goal.separate),
         )
         for _ in range(_TRIES if goal.ladder else 1):
             answer = resynthesise(
@@ -154,7 +97,9 @@ class Walk:
                 return None
             made = [self._place(ends, nets, relays, mesh) for ends in answer.poles]
             candidate = trim(Mesh((*rest, *made), mesh.feeds))
-            if set(candidate.poles) != set(mesh.poles) and goal.accepts(candidate):
+            if set(candidate.poles) == set(mesh.poles) or not goal.accepts(candidate):
+                continue
+            if goal.excess(candidate) <= goal.excess(mesh):
                 return candidate
         return None
 
@@ -269,7 +214,7 @@ def wander(
     if not usable:
         return
     random.shuffle(usable)
-    usable.sort(key=cost)
+    usable.sort(key=goal.cost)
     best = usable[0]
     yield Found(0, best)
     windows, polish = 0, _POLISH
@@ -279,15 +224,15 @@ def wander(
             usable[attempt % len(usable)] if fresh else best, goal, seed=random.getrandbits(32)
         )
         patience = _PATIENCE * len(walk.here.poles)
-        idle, known = 0, cost(walk.best)
+        idle, known = 0, goal.cost(walk.best)
         while idle < patience and polish and (effort is None or windows < effort):
             walk.step()
             windows += 1
             idle += 1
-            polish -= len(best.poles) <= enough
-            if cost(walk.best) < known:
-                known, idle = cost(walk.best), 0
-            if known < cost(best):
+            polish -= goal.reached(best, enough)
+            if goal.cost(walk.best) < known:
+                known, idle = goal.cost(walk.best), 0
+            if known < goal.cost(best):
                 best = walk.best
                 yield Found(windows, best)
             elif windows % _SIGN_OF_LIFE == 0:

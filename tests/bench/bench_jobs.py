@@ -14,18 +14,8 @@ Task = tuple[tuple[str, ...], dict[str, Target]]
 Wish = Callable[[int], bool]
 
 # decimal to seven segments a..g for 0..9: common seven-segment convention (seen)
-SEGMENTS = [
-    "1111110",
-    "0110000",
-    "1101101",
-    "1111001",
-    "0110011",
-    "1011011",
-    "1011111",
-    "1110000",
-    "1111111",
-    "1111011",
-]
+_DIGITS = "1111110 0110000 1101101 1111001 0110011 1011011 1011111 1110000 1111111 1111011"
+SEGMENTS = _DIGITS.split()
 
 
 def task(n: int, wishes: dict[str, Wish], listed: Iterable[int] | None = None) -> Task:

@@ -18,9 +18,10 @@ from contactlogic.ladder.recognise import series_parallel
 from contactlogic.network import Network, back_feeds
 from contactlogic.search import portfolio
 from contactlogic.search.diagrams import diagram, fewest_nodes, selector, starts
+from contactlogic.search.goal import Goal, cost
 from contactlogic.search.mesh import Mesh, from_network, to_network, trim
 from contactlogic.search.portfolio import Errand, Progress, explore
-from contactlogic.search.windows import Found, Goal, Walk, cost, wander
+from contactlogic.search.windows import Found, Walk, wander
 from contactlogic.truth import Target
 
 RELAYS = ("A", "B", "C", "D", "E")
@@ -120,10 +121,24 @@ def test_separate_contacts_and_budgets_are_honoured() -> None:
     odd = (Target(3, sum(1 << row for row in range(8) if row.bit_count() % 2)),)
     changeovers = fewest_nodes(odd)
     assert not Goal(3, odd, separate={0: (9, 9)}).accepts(changeovers)
-    use = max(sum(p.relay == k for p in changeovers.poles) for k in range(3))
-    relay = next(k for k in range(3) if sum(p.relay == k for p in changeovers.poles) == use)
-    assert Goal(3, odd, budgets={relay: use}).accepts(changeovers)
-    assert not Goal(3, odd, budgets={relay: use - 1}).accepts(changeovers)
+    use = [sum(pole.relay == k for pole in changeovers.poles) for k in range(3)]
+    relay = use.index(max(use))
+    assert Goal(3, odd, budgets={relay: max(use)}).excess(changeovers) == 0
+    assert Goal(3, odd, budgets={relay: max(use) - 1}).excess(changeovers) == 1
+    assert Goal(3, odd, budgets={relay: 1}, repeaters=True).excess(changeovers) == max(use) - 1
+
+
+def test_walks_keep_to_a_budget_from_a_start_that_breaks_it() -> None:
+    # the diagram of odd parity of 3 has 2 poles on two relays; 1 2 1 is the least (4 poles)
+    odd = (Target(3, sum(1 << row for row in range(8) if row.bit_count() % 2)),)
+    goal = Goal(3, odd, budgets={0: 1, 2: 1})
+    start = fewest_nodes(odd)
+    assert goal.excess(start)
+    walk = Walk(start, goal, seed=1)
+    for _ in range(120):
+        walk.step()
+    assert goal.excess(walk.best) == 0
+    assert is_right(walk.best, odd)
 
 
 @given(wants())

@@ -1,0 +1,102 @@
+"""What a searched network must do and keep to, and which of two is the better one."""
+
+from __future__ import annotations
+
+from collections import Counter
+from collections.abc import Mapping
+from dataclasses import dataclass, field
+
+from contactlogic.ladder.recognise import series_parallel
+from contactlogic.network import back_feeds
+from contactlogic.search.mesh import Mesh, live_rows, to_network
+from contactlogic.truth import Target
+
+__all__ = ["Goal", "cost"]
+
+_INCURABLE = 1000  # excess that no repeater can take off
+
+
+@dataclass(frozen=True)
+class Goal:
+    """What a mesh must do and keep to; loads in the order of `Mesh.feeds`, all by number.
+
+    Args:
+        n: number of relays.
+        targets: what each load must do.
+        ladder: whether every load's paths must be series-parallel.
+        isolated: loads that may not be joined to another load that is off, while off themselves.
+        separate: relays whose makes and breaks never pair, with the most of each.
+        budgets: most poles of a relay.
+        repeaters: whether a relay over its budget may be given repeaters of as many poles.
+        singly: count makes and breaks singly; the meshes then hold single contacts only.
+    """
+
+    n: int
+    targets: tuple[Target, ...]
+    ladder: bool = False
+    isolated: frozenset[int] = frozenset()
+    separate: Mapping[int, tuple[int, int]] = field(default_factory=dict)
+    budgets: Mapping[int, int] = field(default_factory=dict)
+    repeaters: bool = False
+    singly: bool = False
+
+    def accepts(self, mesh: Mesh) -> bool:
+        """Whether a mesh does all this, every row checked, budgets aside (see `excess`)."""
+        for pole in mesh.poles:
+            if None not in (pole.make, pole.break_) and (
+                self.singly or pole.relay in self.separate
+            ):
+                return False
+        live = live_rows(mesh.poles, self.n)
+        for feed, target in zip(mesh.feeds, self.targets, strict=True):
+            if not target.accepts(0 if feed is None else live.get(feed, 0)):
+                return False
+        if not (self.isolated or self.ladder):
+            return True
+        relays = tuple(f"R{k}" for k in range(self.n))
+        loads = tuple(f"Z{k}" for k in range(len(self.targets)))
+        network = to_network(mesh, relays, loads)
+        if self.isolated and back_feeds(network, [loads[k] for k in self.isolated]):
+            return False
+        return not self.ladder or series_parallel(network)
+
+    def excess(self, mesh: Mesh) -> int:
+        """Poles over budget, or repeaters needed where they are allowed; 0 if all is kept."""
+        total = 0
+        for relay, most in self.budgets.items():
+            use = self._use(mesh, relay)
+            if use <= most:
+                continue
+            if not most:
+                total += _INCURABLE * use
+            else:
+                total += -(-use // most) - 1 if self.repeaters else use - most
+        for relay, limits in self.separate.items():
+            own = [pole for pole in mesh.poles if pole.relay == relay]
+            makes = sum(pole.make is not None for pole in own)
+            for count, most in zip((makes, len(own) - makes), limits, strict=True):
+                total += _INCURABLE * max(0, count - most)
+        return total
+
+    def _use(self, mesh: Mesh, relay: int) -> int:
+        """Poles of a relay; of single contacts the fewest that pairing could leave."""
+        own = [pole for pole in mesh.poles if pole.relay == relay]
+        if not self.singly or relay in self.separate:
+            return len(own)
+        makes = sum(pole.make is not None for pole in own)
+        return max(makes, len(own) - makes)
+
+    def cost(self, mesh: Mesh) -> tuple[int, ...]:
+        """Excess first, then the order of section 4."""
+        return (self.excess(mesh), *cost(mesh))
+
+    def reached(self, mesh: Mesh, enough: int) -> bool:
+        """Whether a mesh keeps every budget with no more than `enough` poles."""
+        return len(mesh.poles) <= enough and not self.excess(mesh)
+
+
+def cost(mesh: Mesh) -> tuple[int, int, int, int]:
+    """Poles, busiest relay, springs, nets: the order of section 4."""
+    use = Counter(pole.relay for pole in mesh.poles)
+    springs = sum(2 if None in (pole.make, pole.break_) else 3 for pole in mesh.poles)
+    return len(mesh.poles), max(use.values(), default=0), springs, len(mesh.nets())
