@@ -2,10 +2,21 @@
 
 from __future__ import annotations
 
+from collections.abc import Collection
+
 from contactlogic.search.encoding import Kind
 from contactlogic.search.problem import Grouping, Problem, needs
+from contactlogic.truth import Target
 
-__all__ = ["least_by_kind", "least_poles"]
+__all__ = ["least_by_kind", "least_of_loads", "least_poles"]
+
+
+def least_of_loads(problem: Problem) -> int:
+    """Poles (or contacts) that every network needs, however its loads share nets.
+
+    Counts `_needed` kinds alone: a net that feeds several loads needs what each of them needs.
+    """
+    return sum(_needed(problem, problem.targets.values()).values())
 
 
 def least_by_kind(problem: Problem, grouping: Grouping) -> dict[Kind, int]:
@@ -17,11 +28,15 @@ def least_by_kind(problem: Problem, grouping: Grouping) -> dict[Kind, int]:
     i is operated in the row where the load is on, and a break otherwise; hence the count for
     separate makes and breaks.
     """
+    return _needed(problem, grouping.targets)
+
+
+def _needed(problem: Problem, targets: Collection[Target]) -> dict[Kind, int]:
     least = {}
     for kind in problem.kinds:
         forms = {"C": (True, False), "A": (True,), "B": (False,)}[kind.form]
         least[kind] = int(
-            any(needs(target, kind.relay, make) for target in grouping.targets for make in forms)
+            any(needs(target, kind.relay, make) for target in targets for make in forms)
         )
     return least
 
