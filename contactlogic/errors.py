@@ -67,14 +67,15 @@ class Place:
         """The offending text with a caret under it, or nothing."""
         if self.line is None:
             return []
-        text = self.line.replace("\t", " ")
+        # a terminal acts on control characters, and the caret needs one column for each
+        text = "".join(c if c.isprintable() else " " for c in self.line)
         start = self.column or 0
         if len(text) > 100:  # a window round the caret keeps very long lines readable
             cut = max(0, min(start - 40, len(text) - 100))
             text, start = text[cut : cut + 100], start - cut
         shown = ["    " + text]
         if self.column is not None:
-            shown.append("    " + " " * start + "^" * max(1, self.width))
+            shown.append("    " + " " * start + "^" * max(1, min(self.width, len(text) - start)))
         return shown
 
 

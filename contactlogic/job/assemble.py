@@ -10,225 +10,268 @@ import re
 from collections.abc import Collection, Mapping, Sequence
 from dataclasses import replace
 from pathlib import Path
-from typing import Any
+from typing import Any, get_args
 
-from contactlogic.errors import FormulaError, JobFileError, LimitError, Place, TableError
+from contactlogic.errors import FormulaError, JobFileError, LimitError, Place
 from contactlogic.formula import Expression, evaluate, names, parse
 from contactlogic.job.model import Job, Limits, Load, SeparateContacts, Supply
-from contactlogic.job.names import check_names, did_you_mean
 from contactlogic.job.schema import read_job_file
-from contactlogic.job.sheet import read_sheet
-from contactlogic.job.table import Grid, Unlisted, read_columns, read_rows, targets_of
-from contactlogic.truth import MAX_INPUTS, Target, all_rows
+from contactlogic.job.sheet import SUFFIXES, read_sheet
+from contactlogic.job.table import (
+    MOST_LOADS,
+    Grid,
+    Unlisted,
+    read_columns,
+    read_rows,
+    targets_of,
+    too_many_inputs,
+)
+from contactlogic.job.tomlfile import first_line_of, key_lines, place_of_key
+from contactlogic.naming import check_names, did_you_mean, is_name, listed, place_of, slip_of
+from contactlogic.truth import MAX_INPUTS, Target
 
 __all__ = ["load_job", "load_table_job"]
 
+_MOST_FORMULA_CHARACTERS = 200_000  # of all formulas together; some ten seconds of reading
+
 
 def load_job(path: str | Path) -> Job:
-    """Read a job file (TOML; sections in design.md section 5).
+    """Read a table or formula job file (TOML; sections in design.md section 5).
 
     Raises:
         JobError: with file, section, row and what was expected.
     """
     shown = str(path)
-    file = Path(path)
-    data, text = read_job_file(file, shown)
     place = Place(file=shown)
+    file = Path(path)
+    if file.suffix.lower() in SUFFIXES:
+        raise JobFileError(
+            "this is a bare table, not a job file",
+            place=place,
+            expected="a job file in TOML, or the names of the table's loads beside it",
+        )
+    data, text = read_job_file(file, shown)
     if data.table is None and not data.formulas:
         raise JobFileError(
-            "the job says nothing of any load",
-            place=place,
-            expected="a section [table] or [formulas]",
+            "the job names no load", place=place, expected="a section [table] or [formulas]"
         )
     grid = None if data.table is None else _grid(data.table, text, file, place)
-    unlisted = None if data.table is None else data.table.unlisted
+    places = _formula_places(data.formulas, text, place)
     expressions = {
-        name: parse(formula, place=Place(file=shown, section="formulas", row=name))
-        for name, formula in data.formulas.items()
+        name: parse(formula, place=places[name]) for name, formula in data.formulas.items()
     }
-    relays = _relays(grid, expressions, data.formulas, place)
-    targets, listed = _targets(grid, unlisted, relays)
+    relays = _relays(grid, expressions, data.formulas, places)
+    narrow, rows = targets_of(grid, data.table.unlisted) if grid else ({}, 1)
+    n, own = len(relays), len(grid.relays) if grid else 0
+    targets = {
+        name: Target(n, _spread(target.on, own, n), _spread(target.free, own, n))
+        for name, target in narrow.items()
+    }
     for name, expression in expressions.items():
-        where = Place(file=shown, section="formulas", row=name)
-        table = evaluate(expression, relays, text=data.formulas[name], place=where)
-        targets[name] = Target(len(relays), table)
-    _check_known(data.loads, targets, "load", "loads", place)
-    loads = tuple(
-        Load(
-            name,
-            target,
-            data.loads[name].kind if name in data.loads else None,
-            data.loads[name].amps if name in data.loads else None,
-            data.formulas.get(name),
-        )
-        for name, target in targets.items()
-    )
+        targets[name] = Target(n, evaluate(expression, relays))
+    _check_known(data.loads, targets, "load", ["loads"], text, place)
+    loads = []
+    for name, target in targets.items():
+        facts = data.loads.get(name)
+        kind, amps = (facts.kind, facts.amps) if facts else (None, None)
+        loads.append(Load(name, target, kind, amps, data.formulas.get(name)))
     return Job(
-        data.title if data.title is not None else file.stem,
+        file.stem if data.title is None else data.title,
         relays,
-        loads,
-        listed,
+        tuple(loads),
+        _spread(rows, own, n),
         Supply(data.supply.feed, data.supply.return_),
-        _limits(data.limits, relays, place),
+        _limits(data.limits, relays, text, place),
         shown,
     )
 
 
-def load_table_job(path: str | Path, loads: Sequence[str], unlisted: Unlisted | None = None) -> Job:
+def load_table_job(path: str | Path, loads: Sequence[str], unlisted: str | None = None) -> Job:
     """A job from a bare CSV or XLSX table.
 
     Args:
         path: the table; its header names relays and loads.
         loads: the columns that are loads.
-        unlisted: what loads do in rows that the table leaves out; None if it may leave none out.
+        unlisted: "off" or "free", what loads do in rows that the table leaves out; None if it may
+            leave none out.
+
+    Raises:
+        JobError: with file, row and what was expected.
     """
     shown = str(path)
-    file = Path(path)
-    grid = read_sheet(file, loads, shown)
-    targets, listed = targets_of(grid, unlisted)
+    place = Place(file=shown)
+    known: Unlisted | None = next((word for word in get_args(Unlisted) if word == unlisted), None)
+    if known != unlisted:
+        raise JobFileError(
+            f'unlisted cannot be "{unlisted}"', place=place, expected='"off" or "free"'
+        )
+    check_names(loads, place, " ".join(loads))
+    if not loads:
+        raise JobFileError(
+            "which columns are loads is not said", place=place, expected="at least one load"
+        )
+    grid = read_sheet(Path(path), loads, shown)
+    targets, rows = targets_of(grid, known)
     made = tuple(Load(name, target) for name, target in targets.items())
-    return Job(file.stem, grid.relays, made, listed, file=shown)
+    return Job(Path(path).stem, grid.relays, made, rows, file=shown)
 
 
 def _grid(table: Any, text: str, job: Path, place: Place) -> Grid:
     """The grid of a [table], from its own rows or from the file it names."""
     where = replace(place, section="table")
     inline = table.columns is not None or table.rows is not None
-    if inline == (table.file is not None):
+    if inline and table.file is not None:
         raise JobFileError(
-            "[table] has both rows and a file" if inline else "[table] has no rows",
+            "the table has both rows and a file",
             place=where,
             expected="columns and rows, or file and loads",
         )
-    if not inline:
+    if table.file is not None:
         if not table.loads:
             raise JobFileError(
-                "which columns are loads is not said", place=where, expected='loads = ["LAMP"]'
+                "which columns of the file are loads is not said",
+                place=where,
+                expected='loads = ["LAMP", "HORN"]',
             )
-        path = job.parent / table.file
+        check_names(table.loads, where, " ".join(table.loads))
         shown = str(Path(place.file or "").parent / table.file)
-        return read_sheet(path, table.loads, shown)
+        return read_sheet(job.parent / table.file, table.loads, shown)
     for key in ("columns", "rows"):
         if getattr(table, key) is None:
-            raise JobFileError(f"{key} is missing", place=where, expected="columns and rows")
+            raise JobFileError(
+                f"the table has no {key}",
+                place=where,
+                expected="columns and rows, or file and loads",
+            )
     if table.loads is not None:
         raise JobFileError(
-            "loads belongs to a table in a file",
+            "loads is for a table in a file",
             place=where,
-            hint="in columns the | divides relays from loads",
+            expected="loads after the | in columns",
         )
-    relays, loads = read_columns(table.columns, where)
-    check_names((*relays, *loads), where, table.columns)
-    if len(relays) > MAX_INPUTS:
-        raise _too_many(len(relays), where)
-    rows = read_rows(table.rows, len(relays), len(loads), where)
-    numbers = _line_numbers(text, [row.text for row in rows])
-    labelled = tuple(
-        replace(row, label=f"{row.label} (line {number})" if number else row.label)
-        for row, number in zip(rows, numbers, strict=True)
-    )
-    return Grid(relays, loads, labelled, where)
+    at = replace(where, row=place_of_key(text, ["table", "columns"], where).row)
+    relays, loads = read_columns(table.columns, at)
+    check_names((*relays, *loads), at, table.columns)
+    first = first_line_of(table.rows, ["table", "rows"], text)
+    return Grid(relays, loads, read_rows(table.rows, len(relays), len(loads), where, first), where)
 
 
-def _line_numbers(text: str, rows: Sequence[str]) -> list[int | None]:
-    """Line of the job file on which each row stands, None where a plain look does not find it."""
-    lines = text.splitlines()
-    number = next((k for k, line in enumerate(lines) if re.match(r"\s*\[\s*table\s*\]", line)), 0)
-    found: list[int | None] = []
-    for row in rows:
-        at = next((k for k in range(number, len(lines)) if row.strip() in lines[k]), None)
-        found.append(None if at is None else at + 1)
-        if at is not None:
-            number = at + 1
-    return found
+def _formula_places(formulas: Mapping[str, str], text: str, place: Place) -> dict[str, Place]:
+    """Where each formula stands; their names, number and size are checked on the way."""
+    where = replace(place, section="formulas")
+    size = sum(map(len, formulas.values()))
+    if len(formulas) > MOST_LOADS or size > _MOST_FORMULA_CHARACTERS:
+        raise LimitError(
+            f"there are {len(formulas)} formulas with {size} characters in all",
+            place=where,
+            expected=f"at most {MOST_LOADS} formulas and {_MOST_FORMULA_CHARACTERS} characters",
+        )
+    lines = key_lines(text)
+    places = {}
+    for name in formulas:
+        number = lines.get(("formulas", name))
+        if not is_name(name):
+            check_names([name], replace(where, row=f"line {number}" if number else None))
+        places[name] = replace(where, row=f"line {number}, {name}" if number else name)
+    return places
 
 
 def _relays(
     grid: Grid | None,
     expressions: Mapping[str, Expression],
     formulas: Mapping[str, str],
-    place: Place,
+    places: Mapping[str, Place],
 ) -> tuple[str, ...]:
-    """Relays in order; loads and relays checked against each other."""
-    where = replace(place, section="formulas")
-    check_names(expressions, where)
-    loads = (grid.loads if grid else ()) + tuple(expressions)
-    for name in expressions:
-        if grid and name in grid.loads:
+    """Relays in order, and that no name stands for two things or looks like another."""
+    own, fed = (grid.relays, grid.loads) if grid else ((), ())
+    spelt = {name.upper(): name for name in (*own, *fed)}
+    for load in expressions:
+        if load in fed:
             raise JobFileError(
-                f"{name} stands in the table and in the formulas", place=where, hint="keep one"
+                f"the load {load} stands both in [table] and in [formulas]",
+                place=places[load],
+                expected="each load in one of them",
             )
-        if grid and name in grid.relays:
+        if load in own:
             raise JobFileError(
-                f"{name} is an input relay of the table and a load of the formulas",
-                place=where,
-                hint="give one of them another name",
+                f"{load} is an input relay of the table and cannot be a load as well",
+                place=places[load],
+                expected="another name for the load",
             )
-    relays = dict.fromkeys(grid.relays if grid else ())
+        other = spelt.setdefault(load.upper(), load)
+        if other != load:
+            check_names([other, load], places[load])
+    relays = dict.fromkeys(own)
     for load, expression in expressions.items():
         for name in names(expression):
-            if name in loads:
-                own = "its own formula" if name == load else f"the formula of {load}"
-                at = formulas[load].find(name)
+            if name in relays:
+                continue
+            place = place_of(name, formulas[load], places[load])
+            if name in fed or name in expressions:
+                whose = "its own formula" if name == load else f"the formula of {load}"
                 raise FormulaError(
-                    f"{name} is a load and cannot be a contact in {own}",
-                    place=replace(where, row=load, line=formulas[load], column=at, width=len(name)),
+                    f"{name} is a load and cannot be a contact in {whose}",
+                    place=place,
                     expected="input relays",
                     hint=did_you_mean(name, relays),
                 )
-            relays.setdefault(name)
-    check_names((*relays, *loads), where)
-    if len(relays) > MAX_INPUTS:
-        raise _too_many(len(relays), place)
+            other = spelt.setdefault(name.upper(), name)
+            if other != name:
+                raise FormulaError(
+                    f"{other} and {name} differ only in case",
+                    place=place,
+                    expected="each relay and load spelt in one way",
+                    hint=f"did you mean {other}?",
+                )
+            meant = slip_of(name, own)
+            if meant:
+                raise FormulaError(
+                    f"there is no relay {name}",
+                    place=place,
+                    expected=listed(own) + ", or a relay with a name not so alike",
+                    hint=f"did you mean {meant}? If not, give {name} a column in the table",
+                )
+            relays[name] = None
+            if len(relays) > MAX_INPUTS:
+                every = {relay for part in expressions.values() for relay in names(part)}
+                count = len(every.union(own).difference(expressions, fed))
+                raise too_many_inputs(
+                    "job", count, replace(place, section=None, row=None, line=None)
+                )
     return tuple(relays)
 
 
-def _too_many(count: int, place: Place) -> LimitError:
-    return LimitError(
-        f"the job has {count} input relays",
-        place=place,
-        expected=f"at most {MAX_INPUTS}: every one of the 2^{MAX_INPUTS} rows is proved",
-    )
-
-
-def _targets(
-    grid: Grid | None, unlisted: Unlisted | None, relays: Sequence[str]
-) -> tuple[dict[str, Target], int]:
-    """Table loads over all relays of the job, and the rows that the table lists."""
-    n = len(relays)
-    if grid is None:
-        return {}, all_rows(n)
-    if not grid.rows:
-        raise TableError("the table has no rows", place=grid.place, expected="at least one row")
-    narrow, listed = targets_of(grid, unlisted)
-
-    def spread(table: int) -> int:
-        for i in range(len(grid.relays), n):
-            table |= table << (1 << i)
-        return table
-
-    wide = {name: Target(n, spread(t.on), spread(t.free)) for name, t in narrow.items()}
-    return wide, spread(listed)
+def _spread(table: int, own: int, n: int) -> int:
+    """A table over the first `own` of `n` relays as one over all of them."""
+    for i in range(own, n):
+        table |= table << (1 << i)
+    return table
 
 
 def _check_known(
-    given: Collection[str], known: Collection[str], what: str, section: str, place: Place
+    given: Collection[str],
+    known: Collection[str],
+    what: str,
+    path: list[str],
+    text: str,
+    place: Place,
 ) -> None:
     for name in given:
         if name not in known:
+            where = replace(place_of_key(text, [*path, name], place), section=path[0])
             raise JobFileError(
                 f"there is no {what} {name}",
-                place=replace(place, section=section),
-                expected="one of " + ", ".join(list(known)[:12]),
+                place=where,
+                expected=listed(known),
                 hint=did_you_mean(name, known),
             )
 
 
-def _limits(data: Any, relays: Sequence[str], place: Place) -> Limits:
-    _check_known(data.poles, relays, "input relay", "limits", place)
-    _check_known(data.contacts, relays, "input relay", "limits", place)
+def _limits(data: Any, relays: Sequence[str], text: str, place: Place) -> Limits:
+    _check_known(data.poles, relays, "input relay", ["limits", "poles"], text, place)
+    _check_known(data.contacts, relays, "input relay", ["limits", "contacts"], text, place)
     separate = {}
-    for name, text in data.contacts.items():
-        counts = {form: int(number) for number, form in re.findall(r"(\d+)([AB])", text)}
+    for name, form in data.contacts.items():
+        counts = {letter: int(number) for number, letter in re.findall("([0-9]+)([AB])", form)}
         separate[name] = SeparateContacts(counts.get("A", 0), counts.get("B", 0))
     return Limits(dict(data.poles), separate, data.isolate, data.objective)

@@ -1,21 +1,18 @@
-"""The job file's sections and keys, validated by pydantic; its complaints in our words.
-
-TOML is data: nothing here or behind it evaluates text.
-"""
+"""The job file's sections and keys, validated by pydantic; its complaints in our words."""
 
 from __future__ import annotations
 
 import re
-import tomllib
 from dataclasses import replace
 from functools import cache
 from pathlib import Path
-from typing import TYPE_CHECKING, Any, Literal
+from typing import TYPE_CHECKING, Any
 
 from contactlogic.errors import JobFileError, Place
 from contactlogic.job.model import Isolate, LoadKind, Objective
-from contactlogic.job.names import did_you_mean
-from contactlogic.job.textfile import read_text
+from contactlogic.job.table import Unlisted
+from contactlogic.job.tomlfile import place_of_key, read_toml
+from contactlogic.naming import did_you_mean, shortened
 
 if TYPE_CHECKING:
     from pydantic import BaseModel, ValidationError
@@ -23,17 +20,18 @@ if TYPE_CHECKING:
 __all__ = ["read_job_file"]
 
 _OTHER_JOBS = ("sequence", "timing", "drives", "pattern")
+"""Sections of other kinds of job."""
 
 _EXPECTED = {
-    "title": 'text, such as title = "Sluice house"',
+    "title": 'text such as "Sluice house"',
     "table": "a section [table]",
     "table.columns": 'text such as "UP DOWN | LAMP"',
-    "table.rows": "text of rows, such as 0 1 | 1 a line",
+    "table.rows": "text with a row such as 0 1 | 1 on each line",
     "table.file": "the name of a .csv or .xlsx file",
     "table.loads": 'a list of names such as ["LAMP", "HORN"]',
     "table.unlisted": '"off" or "free"',
     "formulas": "a section [formulas]",
-    "formulas.*": "switching algebra in quotes",
+    "formulas.*": 'switching algebra in quotes, such as "UP DOWN\'" or "1"',
     "supply": "a section [supply]",
     "supply.feed": 'a label such as "+24 V"',
     "supply.return": 'a label such as "0 V"',
@@ -42,10 +40,10 @@ _EXPECTED = {
     "loads.*.kind": '"lamp", "horn", "valve", "coil", "motor" or "other"',
     "loads.*.amps": "a number above 0",
     "limits": "a section [limits]",
-    "limits.poles": "a table such as { UP = 2 }",
-    "limits.poles.*": "a whole number, 0 or more",
-    "limits.contacts": 'a table such as { START = "1A1B" }',
-    "limits.contacts.*": 'makes and breaks, such as "1A1B", "2A" or "1B"',
+    "limits.poles": "poles per relay, such as { UP = 2 }",
+    "limits.poles.*": "a whole number from 0 to 1000",
+    "limits.contacts": 'makes and breaks per relay, such as { START = "1A1B" }',
+    "limits.contacts.*": 'makes (A) and breaks (B), such as "1A1B", "2A" or "1B"',
     "limits.isolate": '"stored", "all" or "none"',
     "limits.objective": '"poles" or "contacts"',
 }
@@ -53,19 +51,13 @@ _EXPECTED = {
 
 
 def read_job_file(path: Path, shown: str) -> tuple[Any, str]:
-    """The validated contents of a job file, and its text.
+    """The validated contents of a table or formula job file, and its text.
 
     Raises:
         JobFileError: unreadable, not TOML, unknown keys, wrong types, or another kind of job.
     """
     place = Place(file=shown)
-    text = read_text(path, place)
-    try:
-        data = tomllib.loads(text)
-    except tomllib.TOMLDecodeError as error:
-        raise _not_toml(error, text, place) from None
-    except RecursionError:
-        raise JobFileError("the file is nested too deeply", place=place) from None
+    data, text = read_toml(path, place)
     if not data:
         raise JobFileError(
             "the file is empty", place=place, expected="a job with [table] or [formulas]"
@@ -73,9 +65,9 @@ def read_job_file(path: Path, shown: str) -> tuple[Any, str]:
     for section in _OTHER_JOBS:
         if section in data:
             raise JobFileError(
-                f"this is a job with [{section}]",
-                place=place,
-                expected="[table] or [formulas]: this version wires those",
+                f"this is another kind of job: it has a section [{section}]",
+                place=place_of_key(text, [section], place),
+                expected="[table] or [formulas]: this command wires jobs of those",
             )
     from pydantic import ValidationError
 
@@ -85,73 +77,62 @@ def read_job_file(path: Path, shown: str) -> tuple[Any, str]:
         raise _translated(error, data, text, place) from None
 
 
-def _not_toml(error: tomllib.TOMLDecodeError, text: str, place: Place) -> JobFileError:
-    message = str(error)
-    found = re.search(r"\(at line (\d+), column (\d+)\)", message)
-    reason = message.split(" (at ")[0]
-    reason = reason[:1].lower() + reason[1:]
-    lines = text.splitlines()
-    if found and 0 < int(found[1]) <= len(lines):
-        number, column = int(found[1]), int(found[2]) - 1
-        line = lines[number - 1]
-        place = replace(place, row=f"line {number}", line=line, column=min(column, len(line)))
-    elif lines:
-        place = replace(place, row=f"line {len(lines)}")
-    return JobFileError(f"not a TOML file: {reason}", place=place, expected="TOML: key = value")
-
-
 def _translated(
     error: ValidationError, data: dict[str, Any], text: str, place: Place
 ) -> JobFileError:
     first = error.errors(include_url=False)[0]
-    path = [str(part) for part in first["loc"] if str(part) != "[key]"]
-    section = path[0] if len(path) > 1 or isinstance(data.get(path[0]), dict) else None
-    key = ".".join(path[1:]) if section else path[0]
-    where = replace(_key_place(text, section, path[-1], place), section=section)
+    path = [str(part) for part in first["loc"]]
     pattern = _pattern(path)
+    section = path[0] if len(path) > 1 else None
+    where = replace(place_of_key(text, path[:3], place), section=section)
     if first["type"] == "extra_forbidden":
-        parent = _pattern(path[:-1])
-        allowed = _keys_under(parent)
-        what = f"[{path[-1]}] is no section" if pattern == path[-1] else f"unknown key {path[-1]}"
-        return JobFileError(
-            what,
-            place=replace(where, section=section if len(path) > 1 else None),
-            expected="one of " + ", ".join(allowed),
-            hint=did_you_mean(path[-1], allowed),
-        )
-    if first["type"] == "missing":
-        return JobFileError(f"{key} is missing", place=where, expected=_EXPECTED.get(pattern))
-    shown = repr(first["input"])
-    shown = shown if len(shown) <= 40 else shown[:37] + "..."
+        return _unknown_key(path, pattern, isinstance(data.get(path[0]), dict), where)
+    within = path[-1].isdigit() and pattern == "table.loads"  # an entry of a list
+    key = ".".join(path[1 if section else 0 : -1 if within else None])
+    expected = _EXPECTED.get(pattern, first["msg"])
+    value = first["input"]
+    allowed = re.findall(r'"(\w+)"', expected) if first["type"] == "literal_error" else []
     return JobFileError(
-        f"{key} cannot be {shown}", place=where, expected=_EXPECTED.get(pattern, first["msg"])
+        f"{key} cannot {'hold' if within else 'be'} {_value(value)}",
+        place=where,
+        expected=expected,
+        hint=did_you_mean(value, allowed) if isinstance(value, str) else None,
     )
 
 
-def _key_place(text: str, section: str | None, key: str, place: Place) -> Place:
-    """The line on which a key stands, as far as a plain look at the text finds it."""
-    here: str | None = None
-    for number, line in enumerate(text.splitlines(), start=1):
-        heading = re.match(r"\s*\[\s*([^\[\]]+?)\s*\]", line)
-        if heading:
-            here = heading[1]
-            if key == here:
-                return replace(place, row=f"line {number}")
-        if here in (section, None) or (section and here and here.startswith(section + ".")):
-            found = re.search(rf"(?<![\w.]){re.escape(key)}(?=\s*=)", line)
-            if found:
-                column = found.start()
-                return replace(
-                    place, row=f"line {number}", line=line, column=column, width=len(key)
-                )
-    return place
+def _unknown_key(path: list[str], pattern: str, is_section: bool, where: Place) -> JobFileError:
+    """The refusal of a key that is none, with where it belongs if it is known elsewhere."""
+    key = path[-1]
+    allowed = _keys_under(_pattern(path[:-1]))
+    hint = did_you_mean(key, allowed)
+    if hint is None:
+        others = [known for known in _EXPECTED if known.endswith("." + key) and known != pattern]
+        hint = f"{key} belongs in [{others[0].split('.')[0]}]" if others else None
+    what = f"there is no key {shortened(key)}"
+    if len(path) == 1 and is_section:
+        what = f"there is no section [{shortened(key)}]"
+    return JobFileError(what, place=where, expected="one of " + ", ".join(allowed), hint=hint)
+
+
+def _value(value: Any) -> str:
+    """A value of the wrong kind, in the words of TOML."""
+    if isinstance(value, dict):
+        return "a section or { }"
+    if isinstance(value, list):
+        return "a list"
+    if isinstance(value, bool):
+        return str(value).lower()
+    if isinstance(value, str):
+        return f'"{shortened(value)}"'
+    return (
+        shortened(str(value)) if not isinstance(value, int) or abs(value) < 10**40 else "so large"
+    )
 
 
 def _pattern(path: list[str]) -> str:
     """The key's place with the user's own names as `*`."""
-    own = {"formulas": 1, "loads": 1}
     parts = list(path)
-    if parts and parts[0] in own and len(parts) > 1:
+    if parts[:1] in (["formulas"], ["loads"]) and len(parts) > 1:
         parts[1] = "*"
     if parts[:2] in (["limits", "poles"], ["limits", "contacts"]) and len(parts) > 2:
         parts[2] = "*"
@@ -162,12 +143,8 @@ def _pattern(path: list[str]) -> str:
 
 def _keys_under(parent: str) -> list[str]:
     prefix = parent + "." if parent else ""
-    depth = prefix.count(".")
-    return [
-        key.removeprefix(prefix)
-        for key in _EXPECTED
-        if key.startswith(prefix) and key.count(".") == depth and not key.endswith("*")
-    ]
+    inner = [key.removeprefix(prefix) for key in _EXPECTED if key.startswith(prefix)]
+    return [key for key in inner if "." not in key and key != "*"]
 
 
 @cache
@@ -188,7 +165,7 @@ def _model() -> type[BaseModel]:
         rows: str | None = None
         file: str | None = None
         loads: list[str] | None = None
-        unlisted: Literal["off", "free"] | None = None
+        unlisted: Unlisted | None = None
 
     class Supply(Strict):
         feed: str | None = None

@@ -1,22 +1,32 @@
-"""Truth tables kept in CSV and XLSX files: a header of names, then cells 0, 1 or -."""
+"""Truth tables kept in CSV and XLSX files: a header of names, then cells 0, 1 or -.
+
+CSV cells may be divided by commas, semicolons or tabs; lines that begin with # are passed over.
+Of an XLSX workbook the first sheet is read; what a cell's formula would give is never worked out.
+"""
 
 from __future__ import annotations
 
 import csv
 import io
-from collections.abc import Sequence
+import warnings
+import zipfile
+from collections.abc import Iterator, Sequence
 from pathlib import Path
+from typing import Any
 
-from contactlogic.errors import JobFileError, Place, TableError
-from contactlogic.job.names import check_names, did_you_mean
-from contactlogic.job.table import Grid, GridRow
+from contactlogic.errors import InputError, JobFileError, LimitError, Place, TableError
+from contactlogic.job.table import MOST_LOADS, MOST_ROWS, Grid, GridRow, too_many_inputs
 from contactlogic.job.textfile import read_bytes, read_text
+from contactlogic.naming import check_names, did_you_mean, listed, shortened
+from contactlogic.truth import MAX_INPUTS
 
 __all__ = ["SUFFIXES", "read_sheet"]
 
 SUFFIXES = (".csv", ".xlsx")
-_MOST_COLUMNS = 200
-_MOST_ROWS = 1_000_000
+_MOST_COLUMNS = MOST_LOADS + 64  # room to say by how much there are too many relays
+_MOST_UNPACKED = 256 << 20  # bytes; a full table of 16 inputs and 8 loads is a third of this
+
+_Line = tuple[str, list[str]]  # what the user calls the line, its cells
 
 
 def read_sheet(path: Path, loads: Sequence[str], shown: str) -> Grid:
@@ -31,22 +41,60 @@ def read_sheet(path: Path, loads: Sequence[str], shown: str) -> Grid:
     suffix = path.suffix.lower()
     if suffix not in SUFFIXES:
         raise JobFileError(
-            f"a table file cannot be {suffix or 'without ending'}",
+            f"a table file cannot end in {suffix}" if suffix else "a table file needs an ending",
             place=place,
             expected="a file ending in .csv or .xlsx",
         )
-    lines = _csv(path, place) if suffix == ".csv" else _xlsx(path, place)
-    lines = [(label, cells) for label, cells in lines if any(cells)]
+    lines = _filled(_csv(path, place) if suffix == ".csv" else _xlsx(path, place), place)
     if not lines:
         raise TableError("the table is empty", place=place, expected="a header of names, then rows")
-    header_label, header = lines[0]
-    check_names(header, Place(file=shown, row=header_label), " ".join(header))
+    label, header = lines[0]
+    relays, fed = _columns(label, header, loads, place)
+    order = [header.index(name) for name in (*relays, *fed)]
+    rows = []
+    for label, cells in lines[1:]:
+        if len(cells) > len(header) or (len(cells) < len(header) and suffix == ".csv"):
+            raise TableError(
+                f"the row has {len(cells)} cell{'' if len(cells) == 1 else 's'}",
+                place=Place(file=shown, row=label, line=" ".join(cells)),
+                expected=f"{len(header)}, one for each column of the header",
+            )
+        cells += [""] * (len(header) - len(cells))  # a workbook does not keep empty cells
+        chosen = tuple(cells[k] for k in order)
+        rows.append(GridRow(chosen, label, " ".join(chosen)))
+    return Grid(relays, fed, tuple(rows), place)
+
+
+def _filled(lines: Iterator[_Line], place: Place) -> list[_Line]:
+    """Lines that hold something, without the empty cells past the last column of the header."""
+    kept: list[_Line] = []
+    width = 0
+    for number, (label, cells) in enumerate(lines):
+        while len(cells) > width and not cells[-1]:
+            cells.pop()
+        if number > MOST_ROWS or len(cells) > _MOST_COLUMNS:
+            raise LimitError(
+                "the table is too large",
+                place=place,
+                expected=f"at most {MOST_ROWS} rows and {_MOST_COLUMNS} columns",
+            )
+        if any(cells):
+            kept.append((label, cells))
+            width = width or len(cells)
+    return kept
+
+
+def _columns(
+    label: str, header: list[str], loads: Sequence[str], place: Place
+) -> tuple[tuple[str, ...], tuple[str, ...]]:
+    where = Place(place.file, row=label)
+    check_names(header, where, " ".join(header))
     for load in loads:
         if load not in header:
             raise TableError(
-                f"there is no column {load}",
-                place=place,
-                expected="one of " + ", ".join(header[:12]),
+                f"there is no column {load} for this load",
+                place=where,
+                expected=listed(header),
                 hint=did_you_mean(load, header),
             )
     relays = tuple(name for name in header if name not in loads)
@@ -54,89 +102,90 @@ def read_sheet(path: Path, loads: Sequence[str], shown: str) -> Grid:
     if not relays or not fed:
         raise TableError(
             "every column is a load" if fed else "no column is a load",
-            place=place,
-            expected="input relays and at least one load",
+            place=where,
+            expected="at least one input relay and one load",
         )
-    order = [header.index(name) for name in (*relays, *fed)]
-    rows = []
-    for label, cells in lines[1:]:
-        if len(cells) != len(header):
-            raise TableError(
-                f"the row has {len(cells)} cells",
-                place=Place(file=shown, row=label, line=" ".join(cells)),
-                expected=f"{len(header)}, one for each column",
-            )
-        chosen = tuple(cells[k] for k in order)
-        starts = tuple(sum(len(c) + 1 for c in chosen[:k]) for k in range(len(chosen)))
-        rows.append(GridRow(chosen, label, " ".join(chosen), starts))
-    return Grid(relays, fed, tuple(rows), place)
+    if len(relays) > MAX_INPUTS:
+        raise too_many_inputs("table", len(relays), place)
+    return relays, fed
 
 
-def _csv(path: Path, place: Place) -> list[tuple[str, list[str]]]:
+def _csv(path: Path, place: Place) -> Iterator[_Line]:
     text = read_text(path, place)
-    first = text.split("\n", 1)[0]
-    delimiter = max(",;\t", key=first.count)
-    reader = csv.reader(io.StringIO(text), delimiter=delimiter, strict=True)
-    lines = []
-    try:
-        for cells in reader:
-            lines.append((f"line {reader.line_num}", [cell.strip() for cell in cells]))
-            if len(lines) > _MOST_ROWS or len(cells) > _MOST_COLUMNS:
-                raise _too_large(place)
-    except csv.Error as error:
-        raise TableError(
-            f"not a CSV table: {error}", place=Place(place.file, row=f"line {reader.line_num}")
-        ) from None
-    return lines
+    with io.StringIO(text, newline=None) as stream:  # any kind of line ending
+        head = next((line for line in stream if line.strip(" \t\n,;") and line[0] != "#"), "")
+        stream.seek(0)
+        delimiter = max(",;\t", key=head.count)
+        reader = csv.reader(stream, delimiter=delimiter, strict=True)
+        try:
+            for cells in reader:
+                cells = [cell.strip() for cell in cells]
+                if cells and cells[0].startswith("#"):
+                    continue
+                yield f"line {reader.line_num}", cells
+        except csv.Error as error:
+            raise TableError(
+                f"not a CSV table: {error}",
+                place=Place(place.file, row=f"line {reader.line_num}"),
+                expected="cells divided by commas, semicolons or tabs",
+            ) from None
 
 
-def _xlsx(path: Path, place: Place) -> list[tuple[str, list[str]]]:
-    import openpyxl
-
+def _xlsx(path: Path, place: Place) -> Iterator[_Line]:
     data = read_bytes(path, place)
     try:
-        book = openpyxl.load_workbook(io.BytesIO(data), read_only=True, data_only=False)
-    except Exception as error:  # openpyxl raises whatever its parsers do
+        with zipfile.ZipFile(io.BytesIO(data)) as packed:
+            size = sum(entry.file_size for entry in packed.infolist())
+        if size > _MOST_UNPACKED:
+            raise LimitError(
+                "the workbook is too large",
+                place=place,
+                expected=f"at most {_MOST_UNPACKED >> 20} MiB when unpacked",
+            )
+        with warnings.catch_warnings():  # of features of workbooks that do not matter here
+            warnings.simplefilter("ignore")
+            yield from _first_sheet(data, place)
+    except InputError:
+        raise
+    except Exception as error:  # a damaged workbook raises whatever its many parsers do
         raise JobFileError(
             f"not an XLSX workbook ({type(error).__name__})",
             place=place,
-            expected="a workbook as spreadsheets save it",
+            expected="a workbook as spreadsheet programs save it",
         ) from None
-    sheet = book.worksheets[0]
-    lines = []
-    for number, row in enumerate(sheet.iter_rows(values_only=True), start=1):
-        label = f"sheet {sheet.title}, row {number}"
-        cells = [_cell(value, Place(place.file, row=label)) for value in row]
-        while cells and not cells[-1]:
-            cells.pop()
-        lines.append((label, cells))
-        if len(lines) > _MOST_ROWS or len(cells) > _MOST_COLUMNS:
-            raise _too_large(place)
-    book.close()
-    return lines
 
 
-def _cell(value: object, place: Place) -> str:
+def _first_sheet(data: bytes, place: Place) -> Iterator[_Line]:
+    import openpyxl
+
+    book = openpyxl.load_workbook(io.BytesIO(data), read_only=True, data_only=False)
+    try:
+        if not book.worksheets:
+            raise TableError("the workbook has no sheet", place=place, expected="a sheet of cells")
+        sheet = book.worksheets[0]
+        sheet.reset_dimensions()  # not every program writes them right
+        # one more than the most, to see that there are more
+        rows = sheet.iter_rows(max_row=MOST_ROWS + 2, max_col=_MOST_COLUMNS + 1, values_only=True)
+        for number, row in enumerate(rows, start=1):
+            label = f"sheet {sheet.title}, row {number}"
+            yield label, [_cell(value, label, place) for value in row]
+    finally:
+        book.close()
+
+
+def _cell(value: Any, label: str, place: Place) -> str:
+    """A cell's value as the text it would have in a CSV file."""
     if value is None:
         return ""
-    if isinstance(value, (bool, int)):
+    if isinstance(value, bool | int) or (isinstance(value, float) and value.is_integer()):
         return str(int(value))
-    if isinstance(value, float) and value.is_integer():
-        return str(int(value))
-    text = str(value).strip()
-    if text.startswith("="):
+    text = value.strip() if isinstance(value, str) else str(value)
+    if text.startswith("=") or hasattr(value, "ref"):  # formulas over several cells are objects
+        formula = f" {shortened(text)}" if text.startswith("=") else ""
         raise TableError(
-            f"the cell holds the formula {text[:40]}",
-            place=place,
+            f"a cell holds a formula{formula}",
+            place=Place(place.file, row=label),
             expected="0, 1, - or a name",
-            hint="nothing in a table is worked out: paste the values",
+            hint="nothing in a table is worked out: paste values in place of formulas",
         )
     return text
-
-
-def _too_large(place: Place) -> TableError:
-    return TableError(
-        "the table is too large",
-        place=place,
-        expected=f"at most {_MOST_ROWS} rows and {_MOST_COLUMNS} columns",
-    )

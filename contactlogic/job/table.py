@@ -2,32 +2,76 @@
 
 A `Grid` is a table as written, whatever file it came from.  `-` in an input stands for both
 values, in a load for "either".  Where one row leaves a load free and an overlapping one fixes it,
-the fixed value holds; 0 against 1 is an error that names both rows.
+the fixed value holds: a free row asks for nothing, so it contradicts nothing.  0 against 1 is an
+error that names both rows.
 """
 
 from __future__ import annotations
 
+import re
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from typing import Literal
 
 from contactlogic.errors import LimitError, Place, TableError
+from contactlogic.naming import shortened
 from contactlogic.truth import MAX_INPUTS, Target, all_rows, literal, rows_of, settings
 
-__all__ = ["Grid", "GridRow", "Unlisted", "read_columns", "read_rows", "targets_of"]
+__all__ = [
+    "MOST_LOADS",
+    "MOST_ROWS",
+    "Grid",
+    "GridRow",
+    "Unlisted",
+    "read_columns",
+    "read_rows",
+    "targets_of",
+    "too_many_inputs",
+]
 
 Unlisted = Literal["off", "free"]
-_MOST_ROWS = 1_000_000
+
+MOST_ROWS = 2 << MAX_INPUTS
+"""Most rows of a table as written; a table may overlap itself, but hardly more than this."""
+
+MOST_LOADS = 1024
+"""Most loads of a job; a bound on time and memory that no cabinet comes near."""
+
+_MARKS = frozenset("01-")
+
+_HABITS = {
+    **dict.fromkeys(
+        ("", "–", "—", "−", "x", "X", "*", "?"),
+        "write - for both values of an input, or for a load that may be either",
+    ),
+    **dict.fromkeys(
+        ("true", "false", "on", "off", "yes", "no", "operated", "released"),
+        "write 1 for operated or on, 0 for released or off",
+    ),
+}
+"""What to write in place of other marks."""
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class GridRow:
     """Cells of one row, inputs first; `label` is what the user calls it, `text` what is shown."""
 
     cells: tuple[str, ...]
     label: str
     text: str
-    starts: tuple[int, ...]  # where each cell begins in `text`
+
+    def place(self, cell: int, place: Place) -> Place:
+        """`place` with this row and a caret under a cell."""
+        starts = [found.start() for found in re.finditer(r"[^\s,|]+", self.text)]
+        if len(starts) != len(self.cells):  # cells of a sheet may be empty or hold any text
+            starts = [sum(len(c) + 1 for c in self.cells[:k]) for k in range(len(self.cells))]
+        return replace(
+            place,
+            row=self.label,
+            line=self.text,
+            column=starts[cell],
+            width=len(self.cells[cell]),
+        )
 
 
 @dataclass(frozen=True)
@@ -42,173 +86,197 @@ class Grid:
 
 def read_columns(text: str, place: Place) -> tuple[tuple[str, ...], tuple[str, ...]]:
     """Input relays and loads of a `columns` line such as "UP DOWN | LAMP"."""
-    if text.count("|") != 1:
+    bars = [i for i, character in enumerate(text) if character == "|"]
+    if len(bars) != 1:
         raise TableError(
-            "columns need one | between relays and loads",
-            place=replace(place, line=text),
-            expected='text such as "UP DOWN FLOOD | LAMP HORN"',
+            "columns have more than one |" if bars else "columns have no |",
+            place=replace(place, line=text, column=bars[1] if bars else len(text.rstrip())),
+            expected='relays, one |, loads: such as "UP DOWN FLOOD | LAMP HORN"',
         )
     left, right = (part.replace(",", " ").split() for part in text.split("|"))
     if not left or not right:
         raise TableError(
-            f"no {'relay' if not left else 'load'} is named",
-            place=replace(place, line=text),
+            f"columns name no {'load' if left else 'relay'}",
+            place=replace(place, line=text, column=bars[0]),
             expected="at least one relay before the | and one load after it",
         )
+    if len(left) > MAX_INPUTS:
+        raise too_many_inputs("table", len(left), place)
     return tuple(left), tuple(right)
 
 
-def read_rows(text: str, inputs: int, loads: int, place: Place) -> tuple[GridRow, ...]:
-    """Rows of inline text; blank lines and what follows a # are passed over."""
+def read_rows(
+    text: str, inputs: int, loads: int, place: Place, first_line: int | None = None
+) -> tuple[GridRow, ...]:
+    """Rows of inline text; blank lines and what follows a # are passed over.
+
+    Args:
+        text: one row a line; cells separated by spaces or commas, | optional.
+        inputs: how many cells of a row are inputs.
+        loads: how many are loads.
+        place: file and section.
+        first_line: line of the file on which `text` begins, if that is known.
+    """
     rows: list[GridRow] = []
-    for line in text.splitlines():
+    for offset, line in enumerate(text.split("\n")):
         shown = line.split("#", 1)[0].rstrip()
-        if not shown.strip():
+        if not shown or shown.isspace():
             continue
         label = f"row {len(rows) + 1}"
-        cells: list[str] = []
-        starts: list[int] = []
-        bars: list[int] = []
-        for start, word in _words(shown):
-            if word == "|":
-                bars.append(len(cells))
-            else:
-                cells.append(word)
-                starts.append(start)
-        if bars not in ([], [inputs]) or len(cells) != inputs + loads:
-            where = replace(place, row=label, line=shown)
-            found = f"{len(cells)} cells"
-            if len(bars) == 1:
-                found = f"{bars[0]} before the | and {len(cells) - bars[0]} after it"
-            raise TableError(
-                f"the row has {found}",
-                place=where,
-                expected=f"{inputs} before the | and {loads} after it",
+        if first_line is not None:
+            label += f", line {first_line + offset}"
+        left, bar, right = shown.partition("|")
+        before = left.replace(",", " ").split()
+        after = right.replace(",", " ").split()
+        cells = (*before, *after)
+        if len(cells) != inputs + loads or "|" in right or (bar and len(before) != inputs):
+            raise _ragged(GridRow(cells, label, shown), len(before), inputs, loads, place)
+        if len(rows) == MOST_ROWS:
+            raise LimitError(
+                f"the table has more than {MOST_ROWS} rows", place=place, expected="fewer rows"
             )
-        rows.append(GridRow(tuple(cells), label, shown, tuple(starts)))
-        if len(rows) > _MOST_ROWS:
-            raise LimitError(f"the table has more than {_MOST_ROWS} rows", place=place)
+        rows.append(GridRow(cells, label, shown))
     return tuple(rows)
 
 
-def _words(line: str) -> list[tuple[int, str]]:
-    """Cells and bars with their positions; spaces, tabs and commas separate."""
-    found, start = [], None
-    for i, character in enumerate(line + " "):
-        if character in " \t,|":
-            if start is not None:
-                found.append((start, line[start:i]))
-                start = None
-            if character == "|":
-                found.append((i, "|"))
-        elif start is None:
-            start = i
-    return found
+def _ragged(row: GridRow, before: int, inputs: int, loads: int, place: Place) -> TableError:
+    bars = row.text.count("|")
+    found = f"{len(row.cells)} cell{'' if len(row.cells) == 1 else 's'}"
+    if bars > 1:
+        found = f"{bars} bars"
+    elif bars:
+        found = f"{before} before the | and {len(row.cells) - before} after it"
+    run_on = any(len(cell) > 1 and _MARKS.issuperset(cell) for cell in row.cells)
+    return TableError(
+        f"the row has {found}",
+        place=replace(place, row=row.label, line=row.text),
+        expected=f"{inputs} before the | and {loads} after it, as in columns",
+        hint="separate the cells by spaces" if run_on else None,
+    )
+
+
+def too_many_inputs(what: str, count: int, place: Place) -> LimitError:
+    """The refusal of a table or job with more input relays than can be proved."""
+    return LimitError(
+        f"the {what} has {count} input relays",
+        place=place,
+        expected=f"at most {MAX_INPUTS}: every one of the 2^{MAX_INPUTS} rows is proved",
+    )
 
 
 def targets_of(grid: Grid, unlisted: Unlisted | None) -> tuple[dict[str, Target], int]:
     """What each load must do over the grid's relays, and the rows that are listed.
 
     Raises:
-        LimitError: too many relays.
+        LimitError: too many relays or loads.
         TableError: an illegal cell, rows that contradict each other, rows missing.
     """
     n = len(grid.relays)
     if n > MAX_INPUTS:
+        raise too_many_inputs("table", n, grid.place)
+    if len(grid.loads) > MOST_LOADS:
         raise LimitError(
-            f"the table has {n} input relays",
+            f"the table has {len(grid.loads)} loads",
             place=grid.place,
-            expected=f"at most {MAX_INPUTS}: every one of the 2^{MAX_INPUTS} rows is proved",
+            expected=f"at most {MOST_LOADS}",
         )
     if not grid.rows:
-        raise TableError("the table has no rows", place=grid.place, expected="at least one row")
-    filled = {mark: [_Rows(n) for _ in grid.loads] for mark in "01-"}
+        raise TableError(
+            "the table has no rows",
+            place=grid.place,
+            expected="at least one row, a cell 0, 1 or - for each column",
+        )
+    filled = [{mark: _Rows(n) for mark in "01-"} for _ in grid.loads]
+    closed = [(literal(n, i, False), literal(n, i, True)) for i in range(n)]
     for row in grid.rows:
-        _check_cells(row, grid.place)
+        if not _MARKS.issuperset(row.cells):
+            raise _illegal(grid, row)
         inputs, wants = row.cells[:n], row.cells[n:]
-        for load, mark in enumerate(wants):
-            filled[mark][load].add(inputs)
-    targets, listed = {}, 0
+        if "-" in inputs:
+            cube = all_rows(n)
+            for i, cell in enumerate(inputs):
+                if cell != "-":
+                    cube &= closed[i][cell == "1"]
+            for load, mark in enumerate(wants):
+                filled[load][mark].cubes |= cube
+        else:
+            number = int("".join(reversed(inputs)), 2)  # relay i is bit i
+            byte, bit = number >> 3, 1 << (number & 7)
+            for load, mark in enumerate(wants):
+                filled[load][mark].single[byte] |= bit
+    targets: dict[str, Target] = {}
+    every, missing = all_rows(n), 0
+    listed = every
     for load, name in enumerate(grid.loads):
-        on, off, free = (filled[mark][load].table() for mark in "10-")
+        on, off, free = (filled[load][mark].table() for mark in "10-")
         if on & off:
             raise _contradiction(grid, load, next(rows_of(on & off)))
-        listed |= on | off | free
-        targets[name] = (on, off)
-    missing = all_rows(n) & ~listed
+        listed = on | off | free  # the same for each load: a row has a cell for every one
+        missing = every & ~listed
+        may = listed & ~(on | off) | (missing if unlisted == "free" else 0)
+        targets[name] = Target(n, on, may)
     if missing and unlisted is None:
         raise _missing(grid, missing)
-    return {
-        name: Target(n, on, (listed & ~(on | off)) | (missing if unlisted == "free" else 0))
-        for name, (on, off) in targets.items()
-    }, listed
+    return targets, listed
 
 
 class _Rows:
-    """A set of rows gathered one by one or by the cube."""
+    """Rows gathered one by one (quick to set) and as cubes (quick to join)."""
 
     def __init__(self, n: int) -> None:
-        self._n = n
-        self._single = bytearray(-(-(1 << n) // 8))
-        self._cubes = 0
-
-    def add(self, inputs: Sequence[str]) -> None:
-        """Add the rows that these input cells stand for."""
-        if "-" not in inputs:
-            row = sum(1 << i for i, cell in enumerate(inputs) if cell == "1")
-            self._single[row >> 3] |= 1 << (row & 7)
-            return
-        cube = all_rows(self._n)
-        for i, cell in enumerate(inputs):
-            if cell != "-":
-                cube &= literal(self._n, i, cell == "1")
-        self._cubes |= cube
+        self.single = bytearray(-(-(1 << n) // 8))
+        self.cubes = 0
 
     def table(self) -> int:
         """The rows as a truth table."""
-        return int.from_bytes(self._single, "little") | self._cubes
+        return int.from_bytes(self.single, "little") | self.cubes
 
 
-def _check_cells(row: GridRow, place: Place) -> None:
-    for cell, start in zip(row.cells, row.starts, strict=True):
-        if cell not in ("0", "1", "-"):
-            where = replace(place, row=row.label, line=row.text, column=start, width=len(cell))
-            shown = cell or "an empty cell"
-            raise TableError(f"{shown} is no value", place=where, expected="0, 1 or -")
-
-
-def _contradiction(grid: Grid, load: int, row: int) -> TableError:
-    n = len(grid.relays)
-    bits = settings(row, n)
-    both = [
-        next(
-            r
-            for r in grid.rows
-            if r.cells[n + load] == mark
-            and all(cell in ("-", str(bit)) for cell, bit in zip(r.cells[:n], bits, strict=True))
-        )
-        for mark in "10"
-    ]
-    first, second = sorted(both, key=grid.rows.index)
-    name = grid.loads[load]
-    setting = " ".join(f"{relay}={bit}" for relay, bit in zip(grid.relays, bits, strict=True))
-    where = replace(grid.place, row=second.label, line=second.text, column=second.starts[n + load])
+def _illegal(grid: Grid, row: GridRow) -> TableError:
+    at = next(k for k, cell in enumerate(row.cells) if cell not in _MARKS)
+    cell = row.cells[at]
+    hint = _HABITS.get(cell) or _HABITS.get(cell.lower())
+    if len(cell) > 1 and _MARKS.issuperset(cell):
+        hint = "separate the cells by spaces"
+    column = (*grid.relays, *grid.loads)[at]
     return TableError(
-        f"{name} is {second.cells[n + load]} here and {first.cells[n + load]} in {first.label}"
-        f" ({first.text.strip()})",
-        place=where,
-        expected=f"one value of {name} for {setting}",
+        f"{shortened(cell)} is no value of {column}" if cell else f"{column} has no value",
+        place=row.place(at, grid.place),
+        expected="0, 1 or -",
+        hint=hint,
+    )
+
+
+def _setting(relays: Sequence[str], row: int) -> str:
+    bits = settings(row, len(relays))
+    return " ".join(f"{relay}={bit}" for relay, bit in zip(relays, bits, strict=True))
+
+
+def _contradiction(grid: Grid, load: int, number: int) -> TableError:
+    n = len(grid.relays)
+    bits = settings(number, n)
+    covering = [
+        row
+        for row in grid.rows
+        if all(cell in ("-", str(bit)) for cell, bit in zip(row.cells[:n], bits, strict=True))
+        and row.cells[n + load] != "-"
+    ]
+    first = covering[0]
+    second = next(row for row in covering if row.cells[n + load] != first.cells[n + load])
+    return TableError(
+        f"{grid.loads[load]} is {second.cells[n + load]} here, but {first.cells[n + load]} in"
+        f" {first.label} ({' '.join(first.text.split())})",
+        place=second.place(n + load, grid.place),
+        expected=f"one value where {_setting(grid.relays, number)}",
     )
 
 
 def _missing(grid: Grid, missing: int) -> TableError:
-    bits = settings(next(rows_of(missing)), len(grid.relays))
-    setting = " ".join(f"{relay}={bit}" for relay, bit in zip(grid.relays, bits, strict=True))
     count = missing.bit_count()
+    what = "1 row is missing: " if count == 1 else f"{count} rows are missing, the first of them "
     return TableError(
-        f"{count} of {1 << len(grid.relays)} rows {'are' if count > 1 else 'is'} missing, the"
-        f" first is {setting}",
+        what + _setting(grid.relays, next(rows_of(missing))),
         place=grid.place,
-        expected='every row, or unlisted = "off" or "free"',
-        hint="unlisted says what loads do in rows that are not listed",
+        expected=f"all {1 << len(grid.relays)} rows, or unlisted off or free",
+        hint="unlisted says what loads do in rows that the table leaves out",
     )

@@ -4,30 +4,37 @@ from __future__ import annotations
 
 from pathlib import Path
 
-from contactlogic.errors import JobFileError, Place
+from contactlogic.errors import JobFileError, LimitError, Place
 
 __all__ = ["read_bytes", "read_text"]
 
-_MOST_BYTES = 64 * 1024 * 1024
+_MOST_MEBIBYTES = 16  # a full table of 16 inputs and 8 loads is a quarter of this
 
 
 def read_bytes(path: Path, place: Place) -> bytes:
-    """The file's bytes; JobFileError if it is missing, a folder, unreadable or too large."""
+    """The file's bytes.
+
+    Raises:
+        JobFileError: missing, a folder or unreadable.
+        LimitError: too large.
+    """
     try:
         if path.is_dir():
             raise JobFileError("this is a folder", place=place, expected="a file")
         with path.open("rb") as file:
-            data = file.read(_MOST_BYTES + 1)
+            data = file.read((_MOST_MEBIBYTES << 20) + 1)
     except FileNotFoundError:
         raise JobFileError(
-            "there is no such file", place=place, hint="check the name and the current folder"
+            "there is no such file", place=place, hint="check the name and the folder"
         ) from None
     except (OSError, ValueError) as error:
         reason = getattr(error, "strerror", None) or str(error)
-        raise JobFileError(f"the file cannot be read: {reason}", place=place) from None
-    if len(data) > _MOST_BYTES:
         raise JobFileError(
-            "the file is too large", place=place, expected=f"at most {_MOST_BYTES >> 20} MiB"
+            f"the file cannot be read: {reason}", place=place, expected="a file you may read"
+        ) from None
+    if len(data) > _MOST_MEBIBYTES << 20:
+        raise LimitError(
+            "the file is too large", place=place, expected=f"at most {_MOST_MEBIBYTES} MiB"
         )
     return data
 

@@ -20,7 +20,7 @@ from contactlogic import errors
 ROOT = Path(contactlogic.__file__).parent
 
 LAYERS = (
-    {"truth", "errors", "child"},
+    {"truth", "errors", "child", "naming", "algebra"},
     {"formula", "job", "network", "design", "terminals"},
     {"check", "minimize", "ladder", "search", "sequence"},
     {"synthesis"},
