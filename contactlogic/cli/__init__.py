@@ -5,6 +5,14 @@
 
 from __future__ import annotations
 
-from contactlogic.cli.app import app, main
+__all__ = ["main"]
 
-__all__ = ["app", "main"]
+
+def main() -> None:
+    """The installed command `contactlogic`."""
+    try:
+        from contactlogic.cli.app import run
+
+        run()
+    except KeyboardInterrupt:  # while still starting; a running command says more (`status`)
+        raise SystemExit(130) from None

@@ -11,7 +11,7 @@ import typer
 
 from contactlogic.cli.status import guarded
 
-__all__ = ["app", "main"]
+__all__ = ["app", "run"]
 
 app = typer.Typer(
     name="contactlogic",
@@ -24,8 +24,8 @@ app = typer.Typer(
 )
 
 
-def main() -> None:
-    """The installed command `contactlogic`."""
+def run() -> None:
+    """Parse the command line and do what it says; ends in SystemExit."""
     for stream in (sys.stdout, sys.stderr):
         if isinstance(stream, io.TextIOWrapper):  # a title may not fit the terminal's encoding
             stream.reconfigure(errors="backslashreplace")
@@ -75,7 +75,7 @@ def wire(
     seed: Annotated[int, typer.Option(min=0, help="Other seeds search in another order.")] = 0,
     seconds: Annotated[
         float, typer.Option(min=0.1, metavar="S", help="Time for the search at most.")
-    ] = 60.0,
+    ] = 45.0,
     loads: Annotated[
         str | None,
         typer.Option(metavar="A,B", help="Which columns of a .csv or .xlsx table are loads."),

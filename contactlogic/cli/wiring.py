@@ -29,7 +29,7 @@ class Request:
     quiet: bool = False
     verbose: bool = False
     seed: int = 0
-    seconds: float = 60.0
+    seconds: float = 45.0
     loads: str | None = None
     unlisted: str | None = None
 

@@ -5,8 +5,11 @@ from __future__ import annotations
 import csv
 import json
 import os
+import random
+import signal
 import subprocess
 import sys
+import time
 from pathlib import Path
 
 import pytest
@@ -17,7 +20,7 @@ import contactlogic.draw
 import contactlogic.job
 import contactlogic.report.folder
 import contactlogic.synthesis
-from contactlogic.cli import app
+from contactlogic.cli.app import app
 from contactlogic.errors import ProofFailed, RendererMissing
 
 STAIRS = """\
@@ -320,6 +323,32 @@ def test_a_failure_in_mid_write_leaves_nothing(
         "  nothing was written; choose another folder with --out\n"
     )
     assert sorted(p.name for p in by_hand.iterdir()) == ["stairs.toml"]
+
+
+def test_ctrl_c_ends_in_130_and_leaves_nothing(here: Path) -> None:
+    """Random rows of 8 inputs and 4 loads keep the search busy far longer than the wait."""
+    rng = random.Random(5)
+    rows = "\n".join(
+        " ".join(str(row >> i & 1) for i in range(8)) + " | " + " ".join(rng.choices("01", k=4))
+        for row in range(256)
+    )
+    names = " ".join(f"K{i}" for i in range(8))
+    (here / "long.toml").write_text(
+        f'[table]\ncolumns = "{names} | L0 L1 L2 L3"\nrows = """\n{rows}\n"""\n'
+    )
+    tool = Path(sys.executable).with_name("contactlogic")
+    with subprocess.Popen(
+        [str(tool), "wire", "long.toml"],
+        stdout=subprocess.PIPE,
+        stderr=subprocess.PIPE,
+        text=True,
+        cwd=here,
+    ) as process:
+        time.sleep(3)
+        process.send_signal(signal.SIGINT)
+        said, complaint = process.communicate()
+    assert (process.returncode, said, complaint) == (130, "", "contactlogic: stopped\n")
+    assert _files(here) == ["long.toml", "stairs.toml"]
 
 
 def test_a_closed_pipe_is_no_fault(here: Path) -> None:

@@ -12,7 +12,7 @@ from pathlib import Path
 import pytest
 from typer.testing import CliRunner
 
-from contactlogic.cli import app
+from contactlogic.cli.app import app
 from contactlogic.report.cautions import CAUTIONS
 
 ROOT = Path(__file__).parents[2]
@@ -64,9 +64,13 @@ def test_the_table_shown_is_the_example() -> None:
     assert shown in (ROOT / "examples" / "sluice.toml").read_text(encoding="utf-8")
 
 
-def test_the_picture_shown_is_there() -> None:
+def test_the_picture_shown_is_of_the_design_shown() -> None:
     (path,) = re.findall(r"!\[[^]]*\]\(([^)]*)\)", README)
     assert (ROOT / path).stat().st_size < 100_000
+    (mark,) = re.findall(r"^(ladder [0-9a-f]{6}) Sluice house$", README, flags=re.MULTILINE)
+    picture = (ROOT / path).read_text(encoding="utf-8").replace("&#160;", " ")
+    assert mark in picture
+    assert "Sluice house" in picture
 
 
 def test_other_files_named_are_there() -> None:
