@@ -24,6 +24,7 @@ __all__ = ["SUFFIXES", "read_sheet"]
 
 SUFFIXES = (".csv", ".xlsx")
 _MOST_COLUMNS = MOST_LOADS + 64  # room to say by how much there are too many relays
+_MOST_CELLS = 5_000_000
 _MOST_UNPACKED = 256 << 20  # bytes; a full table of 16 inputs and 8 loads is a third of this
 
 _Line = tuple[str, list[str]]  # what the user calls the line, its cells
@@ -61,26 +62,27 @@ def read_sheet(path: Path, loads: Sequence[str], shown: str) -> Grid:
             )
         cells += [""] * (len(header) - len(cells))  # a workbook does not keep empty cells
         chosen = tuple(cells[k] for k in order)
-        rows.append(GridRow(chosen, label, " ".join(chosen)))
+        rows.append(GridRow(chosen, label, " ".join(chosen), of_sheet=True))
     return Grid(relays, fed, tuple(rows), place)
 
 
 def _filled(lines: Iterator[_Line], place: Place) -> list[_Line]:
     """Lines that hold something, without the empty cells past the last column of the header."""
     kept: list[_Line] = []
-    width = 0
-    for number, (label, cells) in enumerate(lines):
+    width = read = 0
+    for label, cells in lines:
+        read += 1 + len(cells)  # empty ones included: they take time as well
         while len(cells) > width and not cells[-1]:
             cells.pop()
-        if number > MOST_ROWS or len(cells) > _MOST_COLUMNS:
-            raise LimitError(
-                "the table is too large",
-                place=place,
-                expected=f"at most {MOST_ROWS} rows and {_MOST_COLUMNS} columns",
-            )
         if any(cells):
             kept.append((label, cells))
             width = width or len(cells)
+        if read > _MOST_CELLS or len(kept) > MOST_ROWS + 1 or len(cells) > _MOST_COLUMNS:
+            raise LimitError(
+                "the table is too large",
+                place=place,
+                expected=f"at most {MOST_ROWS} rows, {_MOST_COLUMNS} columns, {_MOST_CELLS} cells",
+            )
     return kept
 
 
@@ -164,9 +166,7 @@ def _first_sheet(data: bytes, place: Place) -> Iterator[_Line]:
             raise TableError("the workbook has no sheet", place=place, expected="a sheet of cells")
         sheet = book.worksheets[0]
         sheet.reset_dimensions()  # not every program writes them right
-        # one more than the most, to see that there are more
-        rows = sheet.iter_rows(max_row=MOST_ROWS + 2, max_col=_MOST_COLUMNS + 1, values_only=True)
-        for number, row in enumerate(rows, start=1):
+        for number, row in enumerate(sheet.iter_rows(values_only=True), start=1):
             label = f"sheet {sheet.title}, row {number}"
             yield label, [_cell(value, label, place) for value in row]
     finally:

@@ -54,24 +54,25 @@ _HABITS = {
 
 @dataclass(frozen=True, eq=False)
 class GridRow:
-    """Cells of one row, inputs first; `label` is what the user calls it, `text` what is shown."""
+    """Cells of one row, inputs first; `label` is what the user calls it, `text` what is shown.
+
+    In `text` the cells stand as the user wrote them, or, of a row of a sheet, one space apart
+    (they may be empty there, or hold spaces).
+    """
 
     cells: tuple[str, ...]
     label: str
     text: str
+    of_sheet: bool = False
 
     def place(self, cell: int, place: Place) -> Place:
         """`place` with this row and a caret under a cell."""
-        starts = [found.start() for found in re.finditer(r"[^\s,|]+", self.text)]
-        if len(starts) != len(self.cells):  # cells of a sheet may be empty or hold any text
-            starts = [sum(len(c) + 1 for c in self.cells[:k]) for k in range(len(self.cells))]
-        return replace(
-            place,
-            row=self.label,
-            line=self.text,
-            column=starts[cell],
-            width=len(self.cells[cell]),
-        )
+        if self.of_sheet:
+            start = sum(len(before) + 1 for before in self.cells[:cell])
+        else:
+            start = [found.start() for found in re.finditer(r"[^\s,|]+", self.text)][cell]
+        width = len(self.cells[cell])
+        return replace(place, row=self.label, line=self.text, column=start, width=width)
 
 
 @dataclass(frozen=True)

@@ -4,7 +4,7 @@ import math
 
 import pytest
 import sympy
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from contactlogic.errors import FormulaError, Place
@@ -101,6 +101,7 @@ def test_table_equals_sympy(expression: Expression) -> None:
         assert bool(other.subs(values)) == bool(table >> row & 1)
 
 
+@settings(max_examples=40)
 @given(st.lists(expressions().filter(without_votes), min_size=1, max_size=6), st.data())
 def test_votes_count(parts: list[Expression], data: st.DataObject) -> None:
     least, exactly = data.draw(st.integers(0, len(parts))), data.draw(st.booleans())

@@ -9,7 +9,7 @@ import pytest
 from input.refused_jobs import CSV, TOML
 
 from contactlogic.errors import JobError
-from contactlogic.job import load_job, load_table_job
+from contactlogic.job import load_job, load_table_job, sheet, table
 
 GOLDEN = Path(__file__).parent / "golden" / "refusals.txt"
 
@@ -102,19 +102,28 @@ def test_bare_table_as_a_job_file() -> None:
     )
 
 
-def test_too_many_rows() -> None:
-    Path("job.toml").write_text(
-        '[table]\ncolumns = "UP | LAMP"\nrows = """\n' + "0 | 0\n" * 131_073 + '"""\n'
-    )
+def test_too_many_rows(monkeypatch: pytest.MonkeyPatch) -> None:
+    assert table.MOST_ROWS == 2 * 2**16
+    for module in (table, sheet):
+        monkeypatch.setattr(module, "MOST_ROWS", 100)
+    for count in (100, 101):
+        Path("job.toml").write_text(
+            '[table]\ncolumns = "UP | LAMP"\nrows = """\n' + "- | 0\n" * count + '"""\n'
+        )
+        Path("gate.csv").write_text("UP,LAMP\n" + "-,0\n" * count)
+        if count == 100:
+            assert load_job("job.toml").targets == load_table_job("gate.csv", ["LAMP"]).targets
     with pytest.raises(JobError) as caught:
         load_job("job.toml")
     assert str(caught.value) == (
-        "job.toml, [table]: the table has more than 131072 rows\n  expected: fewer rows"
+        "job.toml, [table]: the table has more than 100 rows\n  expected: fewer rows"
     )
-    Path("gate.csv").write_text("UP,LAMP\n" + "0,0\n" * 131_073)
     with pytest.raises(JobError) as caught:
         load_table_job("gate.csv", ["LAMP"])
-    assert str(caught.value).startswith("gate.csv: the table is too large\n")
+    assert str(caught.value) == (
+        "gate.csv: the table is too large\n"
+        "  expected: at most 100 rows, 1088 columns, 5000000 cells"
+    )
 
 
 @pytest.mark.parametrize(
