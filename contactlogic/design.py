@@ -61,12 +61,16 @@ class Design:
 
 @dataclass(frozen=True)
 class Result:
-    """What one run found for a job: one design per form asked for."""
+    """What one run found for a job: one design per form asked for.
+
+    `interrupted` tells that the search was stopped early: the designs are proved all the same.
+    """
 
     job: Job
     designs: tuple[Design, ...]
     relays: tuple[str, ...]
     repeaters: Mapping[str, str] = field(default_factory=dict)
+    interrupted: bool = False
 
 
 def fingerprint(form: str, network: Network) -> str:

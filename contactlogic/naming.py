@@ -15,6 +15,7 @@ from contactlogic.errors import JobFileError, Place
 __all__ = [
     "check_names",
     "did_you_mean",
+    "free_name",
     "is_name",
     "listed",
     "place_of",
@@ -145,3 +146,12 @@ def shortened(text: str) -> str:
         c if c.isprintable() else c.encode("unicode_escape").decode() for c in text[:99]
     )
     return plain if len(plain) <= 40 and len(text) <= 99 else plain[:37] + "..."
+
+
+def free_name(base: str, taken: Collection[str]) -> str:
+    """`base_2`, `base_3`, ...: the first that is not taken, not even in another case."""
+    used = {name.upper() for name in taken}
+    number = 2
+    while f"{base}_{number}".upper() in used:
+        number += 1
+    return f"{base}_{number}"

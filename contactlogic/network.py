@@ -8,11 +8,11 @@ synthesisers use; the proof in `check` has a conduction of its own and shares no
 from __future__ import annotations
 
 from collections.abc import Collection, Iterator, Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from contactlogic.truth import literal
 
-__all__ = ["Contact", "Network", "Pole", "PoleCount", "back_feeds", "conduction"]
+__all__ = ["Contact", "Network", "Pole", "PoleCount", "back_feeds", "conduction", "folded"]
 
 
 @dataclass(frozen=True)
@@ -179,3 +179,22 @@ def back_feeds(network: Network, isolated: Collection[str]) -> int:
         for other in nets - {net}:
             rows |= joined[other] & ~live[net]
     return rows
+
+
+def folded(network: Network, repeaters: Mapping[str, str]) -> Network:
+    """The same wiring with each repeater's poles counted as poles of the relay it follows.
+
+    A repeater adds no rows: what a network does is read off its folded form.
+    """
+    if not repeaters:
+        return network
+    relays = tuple(name for name in network.relays if name not in repeaters)
+    order = {name: i for i, name in enumerate(relays)}
+    moved = [replace(pole, relay=repeaters.get(pole.relay, pole.relay)) for pole in network.poles]
+    moved.sort(key=lambda pole: order[pole.relay])  # stable: a relay's own poles come first
+    count = dict.fromkeys(relays, 0)
+    poles = []
+    for pole in moved:
+        count[pole.relay] += 1
+        poles.append(replace(pole, number=count[pole.relay]))
+    return Network(relays, network.supply, network.loads, tuple(poles))

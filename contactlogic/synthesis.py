@@ -1,43 +1,117 @@
 """From a job to a proved result: the one place where synthesis and proof meet.
 
-Each finished network is proved by `check`, which shares no code with what built it.  A network
-that fails its proof is never returned.
+Covers, a ladder from them, then the search: windows and exact search improve the ladder and find
+the best bridge beside it.  Each finished network is proved by `check`, which shares no code with
+what built it.  A network that fails its proof is never returned.
 """
 
 from __future__ import annotations
 
+from collections.abc import Callable, Mapping, Sequence
+from dataclasses import replace
 from time import monotonic
+from typing import Literal
 
 from contactlogic.check import prove
-from contactlogic.design import Bound, Design, LoadStatus, Result
+from contactlogic.design import Bound, Design, Form, LoadStatus, Result
 from contactlogic.errors import LimitError, Place, ProofFailed
 from contactlogic.job.model import Job
-from contactlogic.ladder.synthesise import LadderTask, OverBudget, best_ladder
+from contactlogic.ladder.synthesise import LadderTask, best_ladder
 from contactlogic.minimize import Cover, covers
+from contactlogic.naming import free_name
+from contactlogic.network import Network, Pole
+from contactlogic.search.best import Best, Task, best_networks
+from contactlogic.search.portfolio import Progress
 
-__all__ = ["wire"]
+__all__ = ["EFFORT", "Forms", "wire"]
 
-_SECONDS = 60.0
-_COVER_SHARE = 0.5  # of the time goes to covers at most, shared out evenly over the loads
+Forms = Literal["ladder", "bridge", "both"]
+
+EFFORT = 100
+"""Windows for each walker where neither effort nor seconds are given."""
+
+_CEILING = 600.0  # seconds for covers and ladder where only an effort is given
+_CONFLICTS = 250  # of the proof, for each window of effort
+_COVER_SHARE = 0.3  # of the time goes to covers at most, shared out evenly over the loads
+_LADDER_SHARE = 0.4
 
 
-def wire(job: Job, *, seconds: float = _SECONDS, seed: int = 0) -> Result:
-    """Wire a job as a ladder and prove every row.
+def wire(
+    job: Job,
+    *,
+    form: Forms = "both",
+    seconds: float | None = None,
+    effort: int | None = None,
+    seed: int = 0,
+    workers: int = 2,
+    repeaters: bool = False,
+    watch: Callable[[Sequence[Form], Progress], None] | None = None,
+) -> Result:
+    """Wire a job and prove every row.
 
     Args:
         job: what to wire.
-        seconds: wall-clock limit of the search; small jobs end long before it.
-        seed: same job, same seed and enough seconds: same result.
+        form: "ladder", "bridge" or "both"; the ladder comes first.
+        seconds: wall-clock limit; the search uses it up unless the least is proved before.
+        effort: windows for each walker instead; equal job, seed and effort give equal results.
+            `EFFORT` if neither is given.
+        seed: another seed searches in another order.
+        workers: walking processes at a time.
+        repeaters: whether a relay over its pole budget may be given repeaters (a second relay
+            whose coil is in parallel), as few as possible.
+        watch: called now and then with the forms searched and the progress.
+
+    Ctrl-C during the search ends it; the result then holds the best proved networks so far and
+    is marked `interrupted`.
 
     Raises:
-        LimitError: a pole budget that no ladder found keeps.
+        LimitError: a pole budget that no network found keeps.
         ProofFailed: contactlogic built a network that fails its own proof.
     """
-    deadline = monotonic() + seconds
+    if seconds is None and effort is None:
+        effort = EFFORT
+    deadline = monotonic() + (_CEILING if seconds is None else seconds)
+    forms: list[Form] = ["ladder", "bridge"] if form == "both" else [form]
+    found = _covers(job, deadline, seed)
+    ladder = _ladder(job, found, deadline, seed)
+    best = best_networks(
+        _task(job, repeaters),
+        {name: [ladder] for name in forms},
+        forms,
+        seconds=None if seconds is None else max(0.0, deadline - monotonic()),
+        effort=effort,
+        conflicts=_CONFLICTS * (effort or 0),
+        seed=seed,
+        workers=workers,
+        at_least=_relays_that_matter(job),
+        watch=None if watch is None else lambda progress: watch(forms, progress),
+    )
+    if not repeaters and any(best.over.values()):
+        raise _over_budget(job, best)
+    statuses = tuple(_status(job, name, least[0]) for name, least in found.items())
+    if repeaters:
+        networks, added = _with_repeaters(job, best.networks)
+    else:
+        networks, added = dict(best.networks), {}
+    return Result(
+        job,
+        tuple(_proved(job, name, networks[name], added, best, statuses) for name in forms),
+        (*job.relays, *added),
+        added,
+        interrupted=best.progress.interrupted,
+    )
+
+
+def _covers(job: Job, deadline: float, seed: int) -> dict[str, tuple[Cover, ...]]:
     found: dict[str, tuple[Cover, ...]] = {}
     for left, load in zip(range(len(job.loads), 0, -1), job.loads, strict=True):
         share = min(30.0, _COVER_SHARE * (deadline - monotonic()) / left)
-        found[load.name] = covers(load.target, seconds=max(share, 0.5), seed=seed)
+        found[load.name] = covers(load.target, seconds=max(share, 0.2), seed=seed)
+    return found
+
+
+def _ladder(job: Job, found: Mapping[str, Sequence[Cover]], deadline: float, seed: int) -> Network:
+    """The ladder that the search starts from; budgets are left to the search."""
     task = LadderTask(
         job.relays,
         job.targets,
@@ -47,30 +121,63 @@ def wire(job: Job, *, seconds: float = _SECONDS, seed: int = 0) -> Result:
         job.isolated,
         job.limits.objective == "contacts",
     )
-    try:
-        ladder = best_ladder(task, seconds=max(deadline - monotonic(), 1.0), seed=seed)
-    except OverBudget as problem:
-        raise _over_budget(job, problem) from None
-    proof = prove(
-        ladder.network,
+    seconds = max(0.3, _LADDER_SHARE * (deadline - monotonic()))
+    return best_ladder(task, seconds=seconds, seed=seed).network
+
+
+def _task(job: Job, repeaters: bool) -> Task:
+    return Task(
+        job.relays,
         job.targets,
-        form="ladder",
+        job.limits.poles,
+        job.limits.contacts,
+        job.isolated,
+        job.limits.objective,
+        repeaters,
+    )
+
+
+def _proved(
+    job: Job,
+    form: Form,
+    network: Network,
+    repeaters: Mapping[str, str],
+    best: Best,
+    statuses: tuple[LoadStatus, ...],
+) -> Design:
+    """The design of a network that passes its proof."""
+    budgets = dict(job.limits.poles)
+    for name, relay in repeaters.items():
+        budgets[name] = budgets[relay]
+    proof = prove(
+        network,
+        job.targets,
+        form=form,
         isolated=job.isolated,
-        pole_limits=job.limits.poles,
+        pole_limits=budgets,
         separate=job.limits.contacts,
+        repeaters=repeaters,
     )
     if not proof.ok:
         raise ProofFailed(proof.explain())
-    at_least = _relays_that_matter(job)
-    poles = len(ladder.network.poles)
-    design = Design(
-        "ladder",
-        ladder.network,
-        Bound(at_least, at_least == poles),
-        proof.rows,
-        tuple(_status(job, name, best[0]) for name, best in found.items()),
-    )
-    return Result(job, (design,), job.relays)
+    poles = len(network.poles)
+    contacts = sum(count.contacts for count in network.per_relay().values())
+    notes = []
+    if job.limits.objective == "contacts":
+        at_least = _relays_that_matter(job)
+        proved = contacts == best.at_least
+        notes.append(
+            f"{contacts} contacts, "
+            + ("the least there are: proved" if proved else f"at least {best.at_least} are needed")
+        )
+    else:
+        at_least = best.at_least
+    notes += [
+        f"{name} is a repeater of {relay}: its coil in parallel with {relay}'s"
+        for name, relay in repeaters.items()
+    ]
+    bound = Bound(at_least, at_least == poles)
+    return Design(form, network, bound, proof.rows, statuses, tuple(notes))
 
 
 def _relays_that_matter(job: Job) -> int:
@@ -82,21 +189,64 @@ def _status(job: Job, name: str, cover: Cover) -> LoadStatus:
     return LoadStatus(name, cover.to_text(job.relays), cover.literals, cover.terms, cover.proved)
 
 
-def _over_budget(job: Job, problem: OverBudget) -> LimitError:
-    budgets = dict(job.limits.poles) | {
-        name: have.makes + have.breaks for name, have in job.limits.contacts.items()
-    }
-    short = [name for name, most in budgets.items() if problem.least.get(name, 0) > most]
+def _with_repeaters(
+    job: Job, networks: Mapping[Form, Network]
+) -> tuple[dict[Form, Network], dict[str, str]]:
+    """Poles over budget moved to repeaters; the same repeaters for every form."""
+    need: dict[str, int] = {}
+    for network in networks.values():
+        for relay, count in network.per_relay().items():
+            most = job.limits.poles.get(relay)
+            if most:
+                need[relay] = max(need.get(relay, 0), -(-count.poles // most) - 1)
+    taken = [*job.relays, *(load.name for load in job.loads)]
+    added: dict[str, str] = {}
+    names: dict[str, list[str]] = {}
+    for relay, more in need.items():
+        names[relay] = [relay]
+        for _ in range(more):
+            name = free_name(relay, [*taken, *added])
+            added[name] = relay
+            names[relay].append(name)
+    moved: dict[Form, Network] = {}
+    for form, network in networks.items():
+        poles = []
+        for pole in network.poles:
+            most = job.limits.poles.get(pole.relay)
+            if most:
+                turn, place = divmod(pole.number - 1, most)
+                pole = Pole(names[pole.relay][turn], place + 1, pole.common, pole.make, pole.break_)
+            poles.append(pole)
+        order = {name: k for k, name in enumerate((*job.relays, *added))}
+        poles.sort(key=lambda pole: (order[pole.relay], pole.number))
+        moved[form] = replace(network, relays=(*job.relays, *added), poles=tuple(poles))
+    return moved, added
+
+
+def _over_budget(job: Job, best: Best) -> LimitError:
+    """What the least is, and for which relay."""
+    network = next(best.networks[form] for form, over in best.over.items() if over)
+    use = network.per_relay()
+    short = [name for name, most in job.limits.poles.items() if use[name].poles > most]
     if short:
         name = short[0]
-        what = (
-            f"{name} may use {budgets[name]} poles; the least found for it is {problem.least[name]}"
-        )
+        most, least = job.limits.poles[name], use[name].poles
+        what = f"{name} may use {most} poles; the least found for it is {least}"
     else:
-        what = "no ladder found keeps all pole budgets at once"
+        name, have = next(
+            (name, have)
+            for name, have in job.limits.contacts.items()
+            if use[name].makes > have.makes or use[name].breaks > have.breaks
+        )
+        what = (
+            f"{name} has {have.makes} makes and {have.breaks} breaks; the least found for it is"
+            f" {use[name].makes} makes and {use[name].breaks} breaks"
+        )
+    if not best.feasible:
+        what += " (proved: no network keeps all budgets)"
     return LimitError(
         what,
         place=Place(file=job.file, section="limits"),
-        expected="budgets that some ladder found can keep",
-        hint="raise the budget, or share the work with another relay",
+        expected="budgets that a network found can keep",
+        hint="raise the budget, or allow repeaters with --repeaters",
     )

@@ -51,6 +51,7 @@ SLUICE_RESULT = Result(SLUICE_JOB, (SLUICE_DESIGN,), SLUICE_JOB.relays)
 
 SLUICE_FACTS = Facts(
     {"LAMP": "FLOOD + UP DOWN'", "HORN": "UP' DOWN"},
+    frozenset(("LAMP", "HORN")),
     as_built(SLUICE_NETWORK),
-    longest_runs(SLUICE_DESIGN),
+    longest_runs(SLUICE_DESIGN.network),
 )

@@ -4,14 +4,25 @@ from __future__ import annotations
 
 import io
 import sys
+from enum import StrEnum
 from pathlib import Path
 from typing import Annotated
 
 import typer
 
-from contactlogic.cli.status import guarded
+from contactlogic.cli.status import Status, guarded
+from contactlogic.errors import JobFileError
 
 __all__ = ["app", "run"]
+
+
+class Forms(StrEnum):
+    """What `--form` takes."""
+
+    ladder = "ladder"
+    bridge = "bridge"
+    both = "both"
+
 
 app = typer.Typer(
     name="contactlogic",
@@ -73,9 +84,28 @@ def wire(
         bool, typer.Option("--verbose", "-v", help="Say more, for instance of each cover.")
     ] = False,
     seed: Annotated[int, typer.Option(min=0, help="Other seeds search in another order.")] = 0,
+    form: Annotated[
+        Forms, typer.Option(help="Series-parallel ladder, two-directional bridge, or both.")
+    ] = Forms.both,
     seconds: Annotated[
-        float, typer.Option(min=0.1, metavar="S", help="Time for the search at most.")
-    ] = 45.0,
+        float | None,
+        typer.Option(min=0.1, metavar="S", help="Search so long, or until the least is proved."),
+    ] = None,
+    effort: Annotated[
+        int | None,
+        typer.Option(
+            min=0, metavar="N", help="Search by N windows instead: the same bytes on any machine."
+        ),
+    ] = None,
+    workers: Annotated[int, typer.Option(min=1, max=64, help="Searching processes at a time.")] = 2,
+    poles_per_relay: Annotated[
+        int | None,
+        typer.Option(min=0, metavar="N", help="Pole budget of every relay that has none."),
+    ] = None,
+    repeaters: Annotated[
+        bool,
+        typer.Option("--repeaters", help="Give relays over budget repeaters, as few as possible."),
+    ] = False,
     loads: Annotated[
         str | None,
         typer.Option(metavar="A,B", help="Which columns of a .csv or .xlsx table are loads."),
@@ -96,9 +126,41 @@ def wire(
         quiet=quiet,
         verbose=verbose,
         seed=seed,
+        form=form.value,
         seconds=seconds,
+        effort=effort,
+        workers=workers,
+        poles_per_relay=poles_per_relay,
+        repeaters=repeaters,
         loads=loads,
         unlisted=unlisted,
     )
     with guarded(keep=str(job), trace=verbose):
-        wiring.run(request)
+        if seconds is not None and effort is not None:
+            raise JobFileError("--seconds and --effort exclude each other", hint="give one")
+        result = wiring.run(request)
+        if result.interrupted:
+            raise typer.Exit(Status.STOPPED)
+
+
+@app.command()
+def verify(
+    design: Annotated[Path, typer.Argument(metavar="DESIGN", help="A design.json, from anywhere.")],
+    job: Annotated[
+        Path, typer.Argument(metavar="JOB", help="Job file: .toml, or a table as .csv or .xlsx.")
+    ],
+    loads: Annotated[
+        str | None,
+        typer.Option(metavar="A,B", help="Which columns of a .csv or .xlsx table are loads."),
+    ] = None,
+    unlisted: Annotated[
+        str | None,
+        typer.Option(metavar="off|free", help="What loads do in rows that a .csv or .xlsx lacks."),
+    ] = None,
+) -> None:
+    """Prove the designs of a file against JOB: rows, sneak paths, back-feed, pole use."""
+    from contactlogic.cli import verifying
+
+    with guarded(keep=str(design)):
+        if not verifying.run(design, job, loads=loads, unlisted=unlisted):
+            raise typer.Exit(Status.WRONG)

@@ -1,9 +1,10 @@
 """Exit statuses, and what is said on the way out when something goes wrong.
 
 0    done
+1    done, and the answer is no: a design verified is wrong
 2    what the user gave cannot be used; nothing was written
 3    contactlogic's own fault; no design is given out
-130  stopped by Ctrl-C
+130  stopped by Ctrl-C; what a search had found by then was written
 """
 
 from __future__ import annotations
@@ -25,6 +26,7 @@ class Status(IntEnum):
     """Exit statuses of the command."""
 
     DONE = 0
+    WRONG = 1
     INPUT = 2
     INTERNAL = 3
     STOPPED = 130

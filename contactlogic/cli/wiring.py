@@ -5,17 +5,18 @@ from __future__ import annotations
 import shutil
 import sys
 from collections.abc import Iterable
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from pathlib import Path
+from typing import TYPE_CHECKING
 
-from contactlogic.errors import JobFileError, Place
+from contactlogic.cli.jobs import read_job
+from contactlogic.design import Result
 from contactlogic.job.model import Job
-from contactlogic.job.table import Unlisted
+
+if TYPE_CHECKING:
+    from contactlogic.synthesis import Forms
 
 __all__ = ["Request", "run"]
-
-_TABLES = (".csv", ".xlsx")
-_UNLISTED: dict[str, Unlisted] = {"off": "off", "free": "free"}
 
 
 @dataclass(frozen=True)
@@ -29,82 +30,76 @@ class Request:
     quiet: bool = False
     verbose: bool = False
     seed: int = 0
-    seconds: float = 45.0
+    form: Forms = "both"
+    seconds: float | None = None
+    effort: int | None = None
+    workers: int = 2
+    poles_per_relay: int | None = None
+    repeaters: bool = False
     loads: str | None = None
     unlisted: str | None = None
 
 
-def run(request: Request) -> None:
-    """Do what was asked.
+def run(request: Request) -> Result:
+    """Do what was asked; tells by `Result.interrupted` whether the search was stopped early.
 
     Raises:
         InputError: the job or the folder cannot be used; nothing was written.
         InternalError: the proof failed; nothing was printed or written.
     """
+    from contactlogic.cli.progress import live
     from contactlogic.report.folder import check_folder, write_folder
     from contactlogic.synthesis import wire
 
-    job = _read(request)
+    job = _limited(read_job(request.job, request.loads, request.unlisted), request)
     folder = request.out or Path(request.job.stem)
     if not request.json:
         check_folder(folder, force=request.force)  # before the search, which takes time
-    result = wire(job, seconds=request.seconds, seed=request.seed)
+    with live(not request.quiet) as watch:
+        result = wire(
+            job,
+            form=request.form,
+            seconds=request.seconds,
+            effort=request.effort,
+            seed=request.seed,
+            workers=request.workers,
+            repeaters=request.repeaters,
+            watch=watch,
+        )
     if request.json:
         from contactlogic.report.designfile import dumps
 
         if request.out and not request.quiet:
             print("contactlogic: --json writes no files, so --out is not used", file=sys.stderr)
         sys.stdout.write(dumps(result))
-        return
+        return result
 
     from contactlogic.report.facts import facts
     from contactlogic.report.papers import papers
     from contactlogic.report.summary import summary
 
-    known = [facts(design) for design in result.designs]
+    known = [facts(design, result.repeaters) for design in result.designs]
     made = papers(result, known)
     said = summary(result, known, width=_width(), verbose=request.verbose)
     write_folder(folder, made.files, force=request.force)  # last, so that a fault leaves nothing
     if request.quiet:
-        return
+        return result
     sys.stdout.write(said)
     for note in made.notes:
         print(f"note: {note}")
+    if result.interrupted:
+        print("stopped early: this is the best found so far")
     print(f"written to {folder}: {', '.join(_tidy(made.files))}")
+    return result
 
 
-def _read(request: Request) -> Job:
-    """The job of a TOML file, or of a bare table with the loads named on the command line."""
-    from contactlogic.job import load_job, load_table_job
-
-    place = Place(file=str(request.job))
-    kind = request.job.suffix.lower()
-    if kind in _TABLES:
-        if not request.loads or not request.loads.strip(", "):
-            raise JobFileError(
-                "which columns of this table are loads is not said",
-                place=place,
-                expected="their names after --loads",
-                hint=f"contactlogic wire {request.job} --loads LAMP,HORN",
-            )
-        names = tuple(name.strip() for name in request.loads.split(",") if name.strip())
-        return load_table_job(request.job, names, _unlisted(request))
-    for option, value in (("--loads", request.loads), ("--unlisted", request.unlisted)):
-        if value is not None:
-            raise JobFileError(
-                f"{option} is for a bare table (.csv or .xlsx)",
-                place=place,
-                hint="a job file says this itself, in its [table]",
-            )
-    return load_job(request.job)
-
-
-def _unlisted(request: Request) -> Unlisted | None:
-    if request.unlisted is None:
-        return None
-    if request.unlisted not in _UNLISTED:
-        raise JobFileError(f"--unlisted {request.unlisted} is not known", expected="off or free")
-    return _UNLISTED[request.unlisted]
+def _limited(job: Job, request: Request) -> Job:
+    """The job with the budget of `--poles-per-relay` for every relay that has none of its own."""
+    if request.poles_per_relay is None:
+        return job
+    free = (name for name in job.relays if name not in job.limits.contacts)
+    poles = dict.fromkeys(free, request.poles_per_relay) | dict(job.limits.poles)
+    return replace(job, limits=replace(job.limits, poles=poles))
 
 
 def _width() -> int | None:

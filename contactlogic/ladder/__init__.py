@@ -1,6 +1,7 @@
 """Ladders: covers factored into series-parallel rungs, ordered, paired and shared."""
 
+from contactlogic.ladder.candidates import formula_of
 from contactlogic.ladder.recognise import formulas
-from contactlogic.ladder.synthesise import LadderTask, OverBudget, best_ladder
+from contactlogic.ladder.synthesise import LadderTask, best_ladder
 
-__all__ = ["LadderTask", "OverBudget", "best_ladder", "formulas"]
+__all__ = ["LadderTask", "best_ladder", "formula_of", "formulas"]

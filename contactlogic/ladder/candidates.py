@@ -12,6 +12,7 @@ from random import Random
 
 from contactlogic.ladder.cases import by_cases, least_small, needed
 from contactlogic.ladder.factor import Term, factor_products, factor_sums
+from contactlogic.ladder.recognise import expression
 from contactlogic.ladder.refine import refine
 from contactlogic.ladder.small import RELAYS
 from contactlogic.ladder.tree import (
@@ -23,12 +24,14 @@ from contactlogic.ladder.tree import (
     leaves,
     sort_key,
 )
+from contactlogic.minimize import cover
 from contactlogic.minimize.cube import Cover
 from contactlogic.truth import Target
 
-__all__ = ["candidate_trees", "combine", "least_tree"]
+__all__ = ["candidate_trees", "combine", "formula_of", "least_tree"]
 
 _LEAST_TREES = 60  # least trees looked at for a load of few relays
+_FEW_RELAYS = 6  # up to here a formula is searched for, above it is factored from a cover
 _LARGE = 150  # a tree of more contacts is left as its factoring made it: refining would take long
 
 
@@ -48,10 +51,8 @@ def candidate_trees(target: Target, covers: Sequence[Cover], limit: int) -> list
         for tree in least_small(target, chosen, limit=_LEAST_TREES) or ():
             found.setdefault(canonical(tree))
     else:
-        for cover in covers:
-            terms: list[Term] = [frozenset(Leaf(*c) for c in group) for group in cover.groups]
-            tree = factor_products(terms) if cover.kind == "sop" else factor_sums(terms)
-            found.setdefault(canonical(_refined(tree, target)))
+        for known in covers:
+            found.setdefault(canonical(_refined(_factored(known), target)))
         found.setdefault(canonical(least_tree(target)))
 
     def rank(tree: Tree) -> tuple[object, ...]:
@@ -68,6 +69,26 @@ def least_tree(target: Target) -> Tree:
     if tree is None:
         raise ValueError("the target accepts a constant")
     return _refined(tree, target)
+
+
+def formula_of(table: int, relays: Sequence[str]) -> str:
+    """A short formula for what a load does, "0" or "1" where constant."""
+    from contactlogic.formula import to_text
+
+    target = Target(len(relays), table)
+    tree: Tree | bool
+    if not target.on or not target.off:
+        tree = bool(target.on)
+    elif len(needed(target) or ()) <= _FEW_RELAYS:
+        tree = least_tree(target)
+    else:
+        tree = _factored(cover(target, "sop", seconds=1.0))
+    return to_text(expression(tree, relays))
+
+
+def _factored(found: Cover) -> Tree:
+    terms: list[Term] = [frozenset(Leaf(*c) for c in group) for group in found.groups]
+    return factor_products(terms) if found.kind == "sop" else factor_sums(terms)
 
 
 def _refined(tree: Tree, target: Target) -> Tree:

@@ -14,7 +14,7 @@ from typing import Any
 from contactlogic.ladder.tree import Leaf, Series, Tree, parallel, series
 from contactlogic.network import Contact, Network
 
-__all__ = ["formulas", "load_tree", "path_contacts", "series_parallel"]
+__all__ = ["expression", "formulas", "load_tree", "path_contacts", "series_parallel"]
 
 
 def path_contacts(contacts: Iterable[Contact], supply: str, net: str) -> list[Contact]:
@@ -120,17 +120,18 @@ def formulas(network: Network) -> dict[str, str]:
     for load in network.loads:
         tree = load_tree(network, load)
         if tree is not None:
-            result[load] = to_text(_expression(tree, network.relays))
+            result[load] = to_text(expression(tree, network.relays))
     return result
 
 
-def _expression(tree: Tree | bool, relays: Sequence[str]) -> Any:
-    from contactlogic import formula
+def expression(tree: Tree | bool, relays: Sequence[str]) -> Any:
+    """A tree as switching algebra; True and False are the constants."""
+    from contactlogic import algebra as formula
 
     if isinstance(tree, bool):
         return formula.Constant(tree)
     if isinstance(tree, Leaf):
         name = formula.Name(relays[tree.relay])
         return name if tree.make else formula.Break(name)
-    parts = tuple(_expression(part, relays) for part in tree.parts)
+    parts = tuple(expression(part, relays) for part in tree.parts)
     return formula.Series(parts) if isinstance(tree, Series) else formula.Parallel(parts)

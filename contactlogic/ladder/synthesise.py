@@ -25,7 +25,7 @@ from contactlogic.minimize.cube import Cover
 from contactlogic.network import Network, back_feeds
 from contactlogic.truth import Target
 
-__all__ = ["Ladder", "LadderTask", "OverBudget", "best_ladder"]
+__all__ = ["Ladder", "LadderTask", "best_ladder"]
 
 _TREES = 12  # kept for each load
 _SELECTIONS = 6  # selections of one tree a load that are arranged
@@ -58,14 +58,6 @@ class Ladder:
     least_pairing: bool
 
 
-class OverBudget(Exception):
-    """No ladder found keeps every pole budget; `least` is the fewest poles found per relay."""
-
-    def __init__(self, least: Mapping[str, int]) -> None:
-        super().__init__("no ladder found keeps every pole budget")
-        self.least = dict(least)
-
-
 def best_ladder(task: LadderTask, *, seconds: float = 60.0, seed: int = 0) -> Ladder:
     """The ladder of least cost (section 4) among the decompositions tried.
 
@@ -73,8 +65,7 @@ def best_ladder(task: LadderTask, *, seconds: float = 60.0, seed: int = 0) -> La
         seconds: wall-clock limit for the exact arrangement; what is done by then counts.
         seed: of the choice of decompositions and of the engine.
 
-    Raises:
-        OverBudget: no ladder found keeps the pole budgets.
+    Where no ladder found keeps the budgets, the one that breaks them least comes back.
     """
     deadline = monotonic() + seconds
     place = {name: i for i, name in enumerate(task.relays)}
@@ -83,7 +74,6 @@ def best_ladder(task: LadderTask, *, seconds: float = 60.0, seed: int = 0) -> La
         {place[name]: most for name, most in task.poles.items()},
     )
     best: Ladder | None = None
-    least: dict[str, int] = {}
     plans = list(_plans(task, rules, seed))
     for plan, ordered in zip(plans, _arranged(task, plans, rules, seed, deadline), strict=True):
         network = build(
@@ -95,24 +85,19 @@ def best_ladder(task: LadderTask, *, seconds: float = 60.0, seed: int = 0) -> La
         if task.isolated and back_feeds(network, task.isolated):
             continue
         network = tap_loads(network, task.targets, lambda net: _allowed(net, task), task.separate)
-        for name, count in network.per_relay().items():
-            least[name] = min(count.poles, least.get(name, count.poles))
-        if not _within_budget(network, task):
-            continue
         if best is None or _cost(network, task) < _cost(best.network, task):
             best = Ladder(network, ordered is not None and ordered.least)
-    if best is None:
-        raise OverBudget(least)
+    assert best is not None  # rungs apart are among the plans and never feed back
     return best
 
 
-def _within_budget(network: Network, task: LadderTask) -> bool:
-    """Whether no relay uses more poles, or more separate makes or breaks, than it has."""
+def _over_budget(network: Network, task: LadderTask) -> int:
+    """Poles, separate makes and separate breaks beyond what the relays have."""
     use = network.per_relay()
-    return all(use[name].poles <= most for name, most in task.poles.items()) and all(
-        use[name].makes <= have.makes and use[name].breaks <= have.breaks
-        for name, have in task.separate.items()
-    )
+    over = sum(max(0, use[name].poles - most) for name, most in task.poles.items())
+    for name, have in task.separate.items():
+        over += max(0, use[name].makes - have.makes) + max(0, use[name].breaks - have.breaks)
+    return over
 
 
 def _allowed(network: Network, task: LadderTask) -> bool:
@@ -120,9 +105,10 @@ def _allowed(network: Network, task: LadderTask) -> bool:
 
 
 def _cost(network: Network, task: LadderTask) -> tuple[int, ...]:
+    first = (_over_budget(network, task),)
     if task.contacts_first:
-        return (sum(1 for _ in network.contacts()), *network.cost())
-    return network.cost()
+        return (*first, sum(1 for _ in network.contacts()), *network.cost())
+    return (*first, *network.cost())
 
 
 def _plans(task: LadderTask, rules: Rules, seed: int) -> Iterator[Plan]:

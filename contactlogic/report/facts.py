@@ -12,10 +12,11 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass
+from types import MappingProxyType
 
 from contactlogic.design import Design
 from contactlogic.job.model import Job
-from contactlogic.network import Network, conduction
+from contactlogic.network import Network, conduction, folded
 from contactlogic.truth import all_rows, rows_of
 
 __all__ = [
@@ -50,12 +51,15 @@ class Facts:
     """What the papers of one design say of each load, worked out once.
 
     Args:
-        formulas: switching algebra of each load as built.
+        formulas: switching algebra of each load: as wired, or where the wiring is not
+            series-parallel, a short formula for what it does.
+        as_wired: loads whose formula is read off the wiring.
         tables: rows in which each load is on, as truth tables.
         runs: longest run of contacts in series to each load.
     """
 
     formulas: Mapping[str, str]
+    as_wired: frozenset[str]
     tables: Mapping[str, int]
     runs: Mapping[str, Run]
 
@@ -68,11 +72,18 @@ class Facts:
         return load, Run(self.runs[load].contacts, all(run.exact for run in self.runs.values()))
 
 
-def facts(design: Design) -> Facts:
-    """Formulas, rows and longest runs of a design."""
-    from contactlogic.ladder import formulas
+def facts(design: Design, repeaters: Mapping[str, str] = MappingProxyType({})) -> Facts:
+    """Formulas, rows and longest runs of a design; `repeaters` as in `Result`."""
+    from contactlogic.ladder import formula_of, formulas
 
-    return Facts(formulas(design.network), as_built(design.network), longest_runs(design))
+    network = folded(design.network, repeaters)
+    tables = as_built(network)
+    wired = formulas(network)
+    texts = {
+        load: wired[load] if load in wired else formula_of(table, network.relays)
+        for load, table in tables.items()
+    }
+    return Facts(texts, frozenset(wired), tables, longest_runs(network))
 
 
 def as_built(network: Network) -> dict[str, int]:
@@ -111,19 +122,19 @@ def constant(table: int, relays: int) -> str | None:
     return "always on" if table == all_rows(relays) else None
 
 
-def longest_runs(design: Design, *, work: int = 2_000_000) -> dict[str, Run]:
+def longest_runs(network: Network, *, work: int = 2_000_000) -> dict[str, Run]:
     """The longest run of contacts in series of each load, in the loads' order.
 
     Args:
         work: how many net visits may be spent, shared out evenly over the loads (a million take
             about a second).
     """
-    graph = _Graph(design.network)
+    graph = _Graph(network)
     known: dict[str, Run] = {}
     runs: dict[str, Run] = {}
-    share = work // max(1, len(design.network.loads))
-    for load, net in design.network.loads.items():
-        if net is None or net == design.network.supply:
+    share = work // max(1, len(network.loads))
+    for load, net in network.loads.items():
+        if net is None or net == network.supply:
             runs[load] = Run(0)
             continue
         if net not in known:

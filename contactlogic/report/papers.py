@@ -28,7 +28,7 @@ def papers(result: Result, facts: Sequence[Facts]) -> Papers:
     Where no renderer can be run the drawing's text takes the place of its pictures, and a note
     says so.
     """
-    from contactlogic.draw import draw_ladder, render
+    from contactlogic.draw import draw_bridge, draw_ladder, render
     from contactlogic.report.designfile import dumps
 
     files = {
@@ -38,7 +38,8 @@ def papers(result: Result, facts: Sequence[Facts]) -> Papers:
     notes = []
     for design in result.designs:
         form = design.form
-        text = draw_ladder(
+        draw = draw_ladder if form == "ladder" else draw_bridge
+        text = draw(
             design,
             title=result.job.title,
             supply=result.job.supply,

@@ -43,7 +43,9 @@ def at_rest(tables: Mapping[str, int]) -> str:
 def formula(facts: Facts, load: str, relays: int) -> str:
     """The load's switching algebra as built; constant loads are said to be so."""
     said = constant(facts.tables[load], relays)
-    text = facts.formulas.get(load, "not a series-parallel circuit, no formula")
+    text = facts.formulas[load]
+    if said is None and load not in facts.as_wired:
+        said = "what it does, not how it is wired"
     return f"{text}  ({said})" if said else text
 
 

@@ -43,7 +43,30 @@ def summary(
         design_summary(design, result.job, known, width=width, verbose=verbose)
         for design, known in zip(result.designs, facts, strict=True)
     ]
+    if len(result.designs) > 1:
+        parts.append("\n".join(_side_by_side(result, width)) + "\n")
     return "\n".join(parts)
+
+
+def _side_by_side(result: Result, width: int | None) -> list[str]:
+    """The designs of a run in a few figures, and what the last saves on the first."""
+    rows = []
+    for design in result.designs:
+        counts = design.network.per_relay()
+        busiest = max(counts, key=lambda name: counts[name].poles, default="")
+        figures = (
+            len(design.network.poles),
+            sum(n.contacts for n in counts.values()),
+            sum(n.springs for n in counts.values()),
+        )
+        most = f"{busiest} ({counts[busiest].poles})" if busiest else "none"
+        row = (design.form, *map(str, figures), most, bound_line(design.bound))
+        rows.append(row)
+    header = ("form", "poles", "contacts", "springs", "busiest relay", "bound")
+    first, last = result.designs[0], result.designs[-1]
+    saved = len(first.network.poles) - len(last.network.poles)
+    said = f"saves {count(saved, 'pole')}" if saved > 0 else "saves no pole"
+    return [*_table(header, rows, width=width), "", f"the {last.form} {said} on the {first.form}"]
 
 
 def design_summary(

@@ -62,7 +62,7 @@ def networks(draw: st.DrawFn) -> Network:
 @given(networks())
 @settings(max_examples=300, deadline=None)
 def test_longest_run_is_the_longest_consistent_simple_path(network: Network) -> None:
-    runs = longest_runs(_design(network))
+    runs = longest_runs(network)
     assert runs == {load: Run(_oracle(network, load)) for load in network.loads}
 
 
@@ -78,18 +78,18 @@ def test_longest_run_of_a_parity_chain() -> None:
         ]
     poles.append(Pole(f"K{n - 1}", 1, "z", f"e{n - 2}", f"o{n - 2}"))
     network = Network(relays, "L", {"ODD": "z"}, tuple(poles))
-    assert longest_runs(_design(network)) == {"ODD": Run(n)}
+    assert longest_runs(network) == {"ODD": Run(n)}
 
 
 def test_a_run_out_of_work_says_so() -> None:
-    run = longest_runs(SLUICE_DESIGN, work=1)["LAMP"]
+    run = longest_runs(SLUICE_DESIGN.network, work=1)["LAMP"]
     assert not run.exact
     assert str(run).startswith("at least ")
 
 
 def test_constant_loads_have_no_contacts_in_series() -> None:
     network = Network(("A",), "L", {"ON": "L", "OFF": None}, ())
-    assert longest_runs(_design(network)) == {"ON": Run(0), "OFF": Run(0)}
+    assert longest_runs(network) == {"ON": Run(0), "OFF": Run(0)}
 
 
 def test_constants_are_named() -> None:

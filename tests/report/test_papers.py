@@ -67,7 +67,7 @@ def _constants() -> tuple[Result, Facts]:
     )
     network = Network(("A",), "L", {"LIT": "L", "DARK": None}, ())
     design = Design("ladder", network, Bound(0, True), 2)
-    facts = Facts({"LIT": "1", "DARK": "0"}, as_built(network), longest_runs(design))
+    facts = Facts({"LIT": "1", "DARK": "0"}, frozenset(), as_built(network), longest_runs(network))
     return Result(job, (design,), job.relays), facts
 
 
