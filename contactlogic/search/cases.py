@@ -8,19 +8,17 @@ easy answer is found before a hard refutation is finished.  P is refuted once ea
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator
+from collections.abc import Collection, Iterable, Iterator
 from dataclasses import dataclass
-from itertools import pairwise
 from time import monotonic
 
-from contactlogic.search.bounds import least_by_kind, least_poles
+from contactlogic.search.alike import Symmetries
+from contactlogic.search.bounds import Demand, least_by_kind, total
 from contactlogic.search.encoding import Encoding, Ends, Kind
 from contactlogic.search.problem import (
     Grouping,
     Problem,
     compositions,
-    interchangeable,
-    negations,
     rows_of_grouping,
 )
 from contactlogic.search.rows import Rows, merged
@@ -54,26 +52,25 @@ class Case:
         return max(0, (ends - self.way.fixed) // 2)
 
 
-def cases(problem: Problem, way: Grouping, poles: int) -> Iterator[Case]:
+def cases(
+    problem: Problem, way: Grouping, poles: int, demands: Collection[Demand]
+) -> Iterator[Case]:
     """The cases of one grouping that together hold every network worth looking at."""
-    kinds = problem.kinds
-    if poles < least_poles(problem, way):
+    if total(demands) > poles:
         return
-    least = least_by_kind(problem, way)
-    plain = not (problem.budgets or problem.separate or problem.objective == "contacts")
-    classes = interchangeable(way.targets, problem.n) if plain else []
-    masks = negations(way.targets, problem.n) if plain else []
-    turnable = frozenset((mask & -mask).bit_length() - 1 for mask in masks)
-    for counts in compositions(kinds, poles, least, _most_by_kind(problem, poles)):
-        if any(counts[a] < counts[b] for group in classes for a, b in pairwise(group)):
+    kinds = problem.kinds
+    symmetric = Symmetries(problem, way)
+    least, most = least_by_kind(problem, way), _most_by_kind(problem, poles)
+    for counts in compositions(kinds, poles, least, most):
+        if not all(demand.met(counts) for demand in demands):
             continue
-        if _breaks_budget(problem, kinds, counts):
+        if _breaks_budget(problem, kinds, counts) or not symmetric.foremost(counts):
             continue
         yield Case(
             problem,
             way,
             tuple(kind for kind, count in zip(kinds, counts, strict=True) for _ in range(count)),
-            turnable,
+            symmetric.turnable,
         )
 
 
@@ -114,6 +111,10 @@ class Budget:
     @property
     def seconds(self) -> float | None:
         return None if self.deadline is None else max(0.0, self.deadline - monotonic())
+
+    def part(self, conflicts: int) -> Budget:
+        """A budget of its own for one piece of work; what it spends is to be added here."""
+        return Budget(self.grant(conflicts), self.deadline)
 
     def grant(self, wanted: int) -> int:
         """Conflicts that may be spent of those wanted."""

@@ -9,24 +9,19 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
-from itertools import islice
-from math import comb
-from random import Random
 from time import monotonic
 
 from contactlogic.network import Network
-from contactlogic.search.assemble import assemble
-from contactlogic.search.bounds import least_of_loads, least_poles
-from contactlogic.search.cases import Budget, Case, ask, cases, most_poles
-from contactlogic.search.problem import Grouping, Problem, groupings
+from contactlogic.search.cases import Budget
+from contactlogic.search.problem import Problem
+from contactlogic.search.restriction import Restrictions
+from contactlogic.search.rise import Rise
 from contactlogic.search.solver import SOLVER
 
 __all__ = ["ExactNews", "ExactResult", "exact", "prove"]
 
-_MOST_RELAYS = 8
-_MOST_GROUPINGS = 500
-_MOST_CASES = 3000  # of one size
-_MOST_CLAUSES = 600_000  # of one case, about; some 100 MB
+_FIRST_SHARE = 500  # conflicts for each smaller problem; four times as many every round
+_WHOLE = 10  # times that for the problem itself
 
 
 @dataclass(frozen=True)
@@ -83,7 +78,7 @@ def prove(
     Raises:
         ProofFailed: a network found fails its proof by `contactlogic.check`.
     """
-    yield from _rise(problem, known, None, seed, Budget(conflicts), SOLVER)
+    yield from _news(problem, known, None, seed, Budget(conflicts), SOLVER)
 
 
 def exact(
@@ -113,14 +108,14 @@ def exact(
     """
     budget = Budget(conflicts, None if seconds is None else monotonic() + seconds)
     news = ExactNews(0)
-    for step in _rise(problem, known, most, seed, budget, solver):
+    for step in _news(problem, known, most, seed, budget, solver):
         news = step
     network = known if news.network is None and news.feasible else news.network
     proven = news.finished and news.feasible
     return ExactResult(network, news.at_least, proven, news.feasible, budget.spent)
 
 
-def _rise(
+def _news(
     problem: Problem,
     known: Network | None,
     most: int | None,
@@ -129,56 +124,33 @@ def _rise(
     solver: str,
 ) -> Iterator[ExactNews]:
     size = None if known is None else _size(problem, known)
-    poles = least_of_loads(problem)
-    done = size is not None and poles >= size
-    yield ExactNews(poles, None, done)
-    if done or problem.n > _MOST_RELAYS:
-        return
-    ways = list(islice(groupings(problem), _MOST_GROUPINGS + 1))
-    if len(ways) > _MOST_GROUPINGS:
-        return
-    if not ways[0].groups:
-        yield ExactNews(0, assemble(problem, ways[0], ()), True)
-        return
-    told, poles = poles, max(poles, min(least_poles(problem, way) for way in ways))
-    random = Random(seed)
-    while True:
-        if poles > told:
-            done = size is not None and poles >= size
-            yield ExactNews(poles, None, done)
-        if done or (most is not None and poles > most):
-            return
-        if most_poles(problem, poles) < poles:
-            yield ExactNews(poles, None, True, False)
-            return
-        level = _level(problem, ways, poles)
-        if level is None:
-            return
-        random.shuffle(level)
-        answer = ask(level, budget, solver)
-        if answer.case is not None:
-            yield ExactNews(poles, assemble(problem, answer.case.way, answer.poles), True)
-        if answer.status != "unsat":
-            return
-        poles += 1
+    whole = Rise(problem, size=size, seed=seed, solver=solver)
+    told = whole.at_least
+    yield _told(whole)
+    smaller: Restrictions | None = None
+    share = _FIRST_SHARE
+    while whole.state == "open" and (most is None or whole.at_least <= most):
+        if smaller is not None:
+            whole.learn(smaller.work(budget, share))
+        part = budget.part(_WHOLE * share)
+        while whole.state == "open" and (most is None or whole.at_least <= most):
+            if whole.at_least > told:
+                told = whole.at_least
+                yield _told(whole)
+            if not whole.advance(part):
+                break
+        budget.spent += part.spent
+        if budget.grant(1) <= 0:
+            break
+        share *= 4
+        if smaller is None and problem.n > 1:
+            smaller = Restrictions(problem, seed=seed, solver=solver)
+    if whole.state == "closed" or whole.at_least > told:
+        yield _told(whole)
 
 
-def _level(problem: Problem, ways: list[Grouping], poles: int) -> list[Case] | None:
-    """The cases of one size; None if they are too many or too big."""
-    level = list(
-        islice((case for way in ways for case in cases(problem, way, poles)), _MOST_CASES + 1)
-    )
-    if len(level) > _MOST_CASES or any(_clauses(case) > _MOST_CLAUSES for case in level):
-        return None
-    return level
-
-
-def _clauses(case: Case) -> int:
-    """About how many clauses a case takes with all its rows: the paths outweigh the rest."""
-    poles, nets = len(case.kinds), case.way.fixed + case.inner
-    paths = sum(target.on.bit_count() for target in case.way.targets)
-    cuts = sum(bool(target.off) for target in case.way.targets) << case.problem.n
-    return nets * (paths * (comb(poles, 3) + 5 * poles) + cuts * 5 * poles)
+def _told(whole: Rise) -> ExactNews:
+    return ExactNews(whole.at_least, whole.network, whole.state == "closed", whole.feasible)
 
 
 def _size(problem: Problem, network: Network) -> int:

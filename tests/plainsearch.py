@@ -1,0 +1,129 @@
+"""Fewest poles by the plainest clauses, sharing no code with contactlogic.
+
+Every end of every pole and every load chooses any net; nothing is left out as alike or wasteful
+but the numbering of nets by first appearance.  Each load's state in each row is a variable with a
+certificate either way: marks that count steps from the supply, or labels that no closed contact
+crosses.  Slow, and meant to be.
+"""
+
+from __future__ import annotations
+
+from itertools import combinations
+
+from pysat.solvers import Solver
+
+
+def least(n, loads, *, isolated=(), budgets=None, single=(), contacts=False, most=6):
+    """Fewest poles for loads [(on, free), ...] of n relays; None if `most` are too few.
+
+    isolated: numbers of loads; budgets: {relay: poles}; single: relays whose poles have one throw;
+    contacts: every pole has one throw.
+    """
+    for poles in range(most + 1):
+        if possible(n, loads, poles, isolated, budgets or {}, set(single), contacts):
+            return poles
+    return None
+
+
+def possible(n, loads, poles, isolated, budgets, single, contacts):
+    nets = range(min(3 * poles + 1, 2 * poles + 1 + len(isolated)))
+    top = [0]
+    clauses = []
+
+    def new():
+        top[0] += 1
+        return top[0]
+
+    def one_of(literals):
+        clauses.append(list(literals))
+        clauses.extend([-a, -b] for a, b in combinations(literals, 2))
+
+    relay = [[new() for _ in range(n)] for _ in range(poles)]
+    ends = [[[new() for _ in nets] for _ in range(3)] for _ in range(poles)]
+    wired = [[None, new(), new()] for _ in range(poles)]
+    for p in range(poles):
+        one_of(relay[p])
+        for e in range(3):
+            one_of(ends[p][e])
+            for net in nets:
+                if net > 3 * p + e + 1:
+                    clauses.append([-ends[p][e][net]])
+        if contacts:
+            clauses.append([-wired[p][1], -wired[p][2]])
+        for i in single:
+            clauses.append([-relay[p][i], -wired[p][1], -wired[p][2]])
+    for i, limit in budgets.items():
+        for group in combinations(range(poles), limit + 1):
+            clauses.append([-relay[p][i] for p in group])
+    place, nowhere = [], []
+    for _ in loads:
+        place.append([new() for _ in nets])
+        nowhere.append(new())
+        one_of([*place[-1], nowhere[-1]])
+
+    def contacts_closed(row):
+        """(literals that must hold, common, end) for every contact that may be closed."""
+        for p in range(poles):
+            for i in range(n):
+                throw = 1 if row >> i & 1 else 2
+                yield [relay[p][i], wired[p][throw]], ends[p][0], ends[p][throw]
+
+    def cut(row, guard, ones, zeros):
+        """Labels 1 at net choice `ones`, 0 at `zeros`, equal across closed contacts, if guard."""
+        label = [new() for _ in nets]
+        for holds, a, b in contacts_closed(row):
+            for x in nets:
+                for y in nets:
+                    pre = [-lit for lit in [*guard, *holds, a[x], b[y]]]
+                    clauses.append([*pre, -label[x], label[y]])
+                    clauses.append([*pre, label[x], -label[y]])
+        for net in nets:
+            clauses.append([*(-g for g in guard), -ones[net], label[net]])
+            clauses.append([*(-g for g in guard), -zeros[net], -label[net]])
+
+    yes = new()
+    clauses.append([yes])
+    supply = [yes if net == 0 else -yes for net in nets]
+    for row in range(1 << n):
+        state = []
+        depth = poles
+        steps = [[new() for _ in nets] for _ in range(depth + 1)]
+        for net in nets:
+            clauses.append([steps[0][net]] if net == 0 else [-steps[0][net]])
+        for d in range(depth):
+            for net in nets:
+                ways = [steps[d][net]]
+                for holds, a, b in contacts_closed(row):
+                    for here, there in ((a, b), (b, a)):
+                        for other in nets:
+                            if other != net:
+                                way = new()
+                                for lit in [*holds, steps[d][other], there[other], here[net]]:
+                                    clauses.append([-way, lit])
+                                ways.append(way)
+                clauses.append([-steps[d + 1][net], *ways])
+        for k, (on, free) in enumerate(loads):
+            live = new()
+            state.append(live)
+            if on >> row & 1:
+                clauses.append([live])
+            elif not free >> row & 1:
+                clauses.append([-live])
+            clauses.append([-live, -nowhere[k]])
+            for net in nets:
+                clauses.append([-live, -place[k][net], steps[depth][net]])
+            cut(row, [-live], supply, place[k])
+        for k in isolated:
+            for other in range(len(loads)):
+                if other == k:
+                    continue
+                together = new()
+                shared = []
+                for net in nets:
+                    both = new()
+                    clauses += [[-both, place[k][net]], [-both, place[other][net]]]
+                    shared.append(both)
+                clauses.append([-together, *shared])
+                cut(row, [-state[k], -state[other], -together], place[k], place[other])
+    with Solver("glucose4", bootstrap_with=clauses) as solver:
+        return solver.solve()
