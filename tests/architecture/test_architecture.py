@@ -36,6 +36,7 @@ HEIGHT = {name: height for height, layer in enumerate(LAYERS) for name in layer}
 SYNTHESISERS = {"minimize", "ladder", "search", "sequence", "synthesis"}
 
 ENGINES = (
+    "biodivine_aeon",
     "pysat",
     "ortools.sat",  # the constraint solver's own layer
     "ortools.linear_solver",  # integer programs; starts much faster, and has its own use
@@ -43,6 +44,7 @@ ENGINES = (
     "dd",
     "graphviz",
     "lark",
+    "matplotlib",
     "openpyxl",
 )
 """Third-party engines; each is met in one module, so that it can be exchanged there."""

@@ -1,0 +1,75 @@
+"""Choosing the free drives so that a sequencer falls into its cycle from every state.
+
+`homing` fills the states outside the sequence so that recovery is certain: in each of them exactly
+one relay is pending, and its move leads one step nearer to the sequence.  `Recovers` judges a
+finished network by its contacts, for the search to weigh: the search starts from the homing wiring
+and keeps to networks that recover, while the drives of states outside the sequence stay free.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass, replace
+
+from contactlogic.network import Network
+from contactlogic.sequence.prove import prove_network
+from contactlogic.sequence.steps import Expansion
+from contactlogic.sequence.table import Timing
+from contactlogic.truth import Target
+
+__all__ = ["Recovers", "homing"]
+
+_STICKS = 100_000  # excess of a network that does not recover: no repeater takes it off
+_HUNTS = 50_000
+
+
+def homing(expansion: Expansion, targets: Mapping[str, Target]) -> dict[str, Target]:
+    """The wanted drives with the states outside the sequence filled so that all come home.
+
+    Args:
+        expansion: unambiguous.
+        targets: wanted drives by relay (`wants.drive_targets`).
+
+    States from which no move of a relay leads to the sequence (an input would have to move) hold.
+    """
+    n = len(expansion.columns)
+    place = {name: i for i, name in enumerate(expansion.columns)}
+    relays = [place[name] for name in expansion.relays]
+    listed = {step.state for step in expansion.steps}
+    toward: dict[int, int] = {}  # state outside -> relay that moves
+    waiting = [step.state for step in expansion.steps]
+    while waiting:  # breadth first, so that every state takes a shortest way
+        following = []
+        for state in waiting:
+            for relay in relays:
+                other = state ^ (1 << relay)
+                if other not in listed and other not in toward:
+                    toward[other] = relay
+                    following.append(other)
+        waiting = following
+    filled = dict(targets)
+    for name in expansion.relays:
+        relay = place[name]
+        on = 0
+        for state in range(1 << n):
+            if state not in listed and (state >> relay & 1) ^ (toward.get(state) == relay):
+                on |= 1 << state
+        target = targets[name]
+        inside = sum(1 << state for state in listed)
+        filled[name] = replace(target, on=target.on | on, free=target.free & inside)
+    return filled
+
+
+@dataclass(frozen=True)
+class Recovers:
+    """A penalty for `search.goal.Goal`: 0 for a network whose contacts recover."""
+
+    timing: Timing
+    expansion: Expansion
+    inputs_return: bool = True
+
+    def __call__(self, network: Network) -> int:
+        found = prove_network(
+            network, self.timing, self.expansion, inputs_return=self.inputs_return
+        )
+        return {"recovers": 0, "hunts": _HUNTS}.get(found.verdict or "", _STICKS)
