@@ -18,8 +18,8 @@ if TYPE_CHECKING:
     from contactlogic.job import load_job, load_table_job
     from contactlogic.job.model import Job, Limits, Load, SeparateContacts, Supply
     from contactlogic.network import Network, Pole
-    from contactlogic.truth import Target
     from contactlogic.synthesis import wire
+    from contactlogic.truth import Target
 
 __all__ = [
     "Bound",

@@ -13,10 +13,11 @@ from time import monotonic
 from typing import Literal
 
 from contactlogic.check import prove
+from contactlogic.child import ChildCrashed, ChildTimedOut, run
 from contactlogic.design import Bound, Design, Form, LoadStatus, Result
 from contactlogic.errors import LimitError, Place, ProofFailed
 from contactlogic.job.model import Job
-from contactlogic.ladder.synthesise import LadderTask, best_ladder
+from contactlogic.ladder.synthesise import LadderTask, best_ladder, plain_ladder
 from contactlogic.minimize import Cover, covers
 from contactlogic.naming import free_name
 from contactlogic.network import Network, Pole
@@ -34,6 +35,7 @@ _CEILING = 600.0  # seconds for covers and ladder where only an effort is given
 _CONFLICTS = 250  # of the proof, for each window of effort
 _COVER_SHARE = 0.3  # of the time goes to covers at most, shared out evenly over the loads
 _LADDER_SHARE = 0.4
+_FEW_RELAYS = 5  # up to here a ladder takes a second or so
 
 
 def wire(
@@ -73,7 +75,7 @@ def wire(
     deadline = monotonic() + (_CEILING if seconds is None else seconds)
     forms: list[Form] = ["ladder", "bridge"] if form == "both" else [form]
     found = _covers(job, deadline, seed)
-    ladder = _ladder(job, found, deadline, seed)
+    ladder = _ladder(job, found, deadline, seed, timed=seconds is not None)
     best = best_networks(
         _task(job, repeaters),
         {name: [ladder] for name in forms},
@@ -110,8 +112,14 @@ def _covers(job: Job, deadline: float, seed: int) -> dict[str, tuple[Cover, ...]
     return found
 
 
-def _ladder(job: Job, found: Mapping[str, Sequence[Cover]], deadline: float, seed: int) -> Network:
-    """The ladder that the search starts from; budgets are left to the search."""
+def _ladder(
+    job: Job, found: Mapping[str, Sequence[Cover]], deadline: float, seed: int, timed: bool
+) -> Network:
+    """The ladder that the search starts from; budgets are left to the search.
+
+    By the clock, a job of many relays is worked on in a child process that can be cut short; what
+    it leaves then is the plain ladder of the covers.
+    """
     task = LadderTask(
         job.relays,
         job.targets,
@@ -122,6 +130,15 @@ def _ladder(job: Job, found: Mapping[str, Sequence[Cover]], deadline: float, see
         job.limits.objective == "contacts",
     )
     seconds = max(0.3, _LADDER_SHARE * (deadline - monotonic()))
+    if not timed or len(job.relays) <= _FEW_RELAYS:
+        return best_ladder(task, seconds=seconds, seed=seed).network
+    try:
+        return run(_improved, task, 0.8 * seconds, seed, seconds=seconds)
+    except (ChildCrashed, ChildTimedOut):
+        return plain_ladder(task)
+
+
+def _improved(task: LadderTask, seconds: float, seed: int) -> Network:
     return best_ladder(task, seconds=seconds, seed=seed).network
 
 

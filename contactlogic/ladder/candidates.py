@@ -28,7 +28,7 @@ from contactlogic.minimize import cover
 from contactlogic.minimize.cube import Cover
 from contactlogic.truth import Target
 
-__all__ = ["candidate_trees", "combine", "formula_of", "least_tree"]
+__all__ = ["candidate_trees", "combine", "formula_of", "least_tree", "plain_tree"]
 
 _LEAST_TREES = 60  # least trees looked at for a load of few relays
 _FEW_RELAYS = 6  # up to here a formula is searched for, above it is factored from a cover
@@ -84,6 +84,13 @@ def formula_of(table: int, relays: Sequence[str]) -> str:
     else:
         tree = _factored(cover(target, "sop", seconds=1.0))
     return to_text(expression(tree, relays))
+
+
+def plain_tree(target: Target, covers: Sequence[Cover]) -> Tree | bool:
+    """The better of the factored covers as it comes, in little time."""
+    if not target.on or not target.off:
+        return bool(target.on)
+    return min((_factored(known) for known in covers), key=contact_count)
 
 
 def _factored(found: Cover) -> Tree:

@@ -16,7 +16,7 @@ from contactlogic.child import ChildCrashed, ChildTimedOut, run
 from contactlogic.job.model import SeparateContacts
 from contactlogic.ladder.arrange import Arrangement, Rules, arrange
 from contactlogic.ladder.build import build
-from contactlogic.ladder.candidates import candidate_trees, combine, least_tree
+from contactlogic.ladder.candidates import candidate_trees, combine, least_tree, plain_tree
 from contactlogic.ladder.plan import Plan, plan_rungs
 from contactlogic.ladder.selecting import selecting_tree
 from contactlogic.ladder.taps import tap_loads
@@ -25,7 +25,7 @@ from contactlogic.minimize.cube import Cover
 from contactlogic.network import Network, back_feeds
 from contactlogic.truth import Target
 
-__all__ = ["Ladder", "LadderTask", "best_ladder"]
+__all__ = ["Ladder", "LadderTask", "best_ladder", "plain_ladder"]
 
 _TREES = 12  # kept for each load
 _SELECTIONS = 6  # selections of one tree a load that are arranged
@@ -89,6 +89,12 @@ def best_ladder(task: LadderTask, *, seconds: float = 60.0, seed: int = 0) -> La
             best = Ladder(network, ordered is not None and ordered.least)
     assert best is not None  # rungs apart are among the plans and never feed back
     return best
+
+
+def plain_ladder(task: LadderTask) -> Network:
+    """A correct ladder in little time: factored covers on rungs apart, in the order they come."""
+    trees = [plain_tree(target, task.covers[name]) for name, target in task.targets.items()]
+    return build(plan_rungs(trees, share=False), task.relays, list(task.targets), task.separate)
 
 
 def _over_budget(network: Network, task: LadderTask) -> int:

@@ -3,11 +3,11 @@
 from __future__ import annotations
 
 from collections import Counter
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass, field
 
 from contactlogic.ladder.recognise import series_parallel
-from contactlogic.network import back_feeds
+from contactlogic.network import Network, back_feeds
 from contactlogic.search.mesh import Mesh, live_rows, to_network
 from contactlogic.truth import Target
 
@@ -29,6 +29,9 @@ class Goal:
         budgets: most poles of a relay.
         repeaters: whether a relay over its budget may be given repeaters of as many poles.
         singly: count makes and breaks singly; the meshes then hold single contacts only.
+        penalty: a further judgement that weighs before all cost, 0 where all is well; it gets the
+            network under the names of `names` and must be picklable.
+        names: relays and loads, for `penalty`.
     """
 
     n: int
@@ -39,6 +42,8 @@ class Goal:
     budgets: Mapping[int, int] = field(default_factory=dict)
     repeaters: bool = False
     singly: bool = False
+    penalty: Callable[[Network], int] | None = None
+    names: tuple[tuple[str, ...], tuple[str, ...]] = ((), ())
 
     def accepts(self, mesh: Mesh) -> bool:
         """Whether a mesh does all this, every row checked, budgets aside (see `excess`)."""
@@ -76,6 +81,8 @@ class Goal:
             makes = sum(pole.make is not None for pole in own)
             for count, most in zip((makes, len(own) - makes), limits, strict=True):
                 total += _INCURABLE * max(0, count - most)
+        if self.penalty is not None:
+            total += self.penalty(to_network(mesh, *self.names))
         return total
 
     def _use(self, mesh: Mesh, relay: int) -> int:

@@ -110,7 +110,7 @@ def explore(
         if effort is not None:
             while run.proof is not None:
                 run.listen()
-        run.waiting = _walkers(errands, effort, seed, workers)
+        run.waiting = run.walkers(seed, workers)
         while (run.waiting or run.walks) and not run.over():
             run.start_walks(workers)
             run.listen()
@@ -162,6 +162,25 @@ class _Run:
         name = self._name()
         arguments = (proving.problem, proving.known, conflicts)
         self.proof = (name, Stream(_proof, *arguments, inbox=self.inbox, name=name))
+
+    def walkers(self, seed: int, workers: int) -> list[_Walker]:
+        """Walkers in turn over the errands, each with a seed of its own.
+
+        By effort, an errand that starts at the proved bound needs but one, to settle ties.
+        """
+        count = len(self.errands)
+        rounds = _WALKERS if self.effort is not None else max(1, -(-workers // max(1, count)))
+        return [
+            _Walker(errand, 1000 * seed + count * turn + errand)
+            for turn in range(rounds)
+            for errand in range(count)
+            if not turn or not self._starts_at_bound(errand)
+        ]
+
+    def _starts_at_bound(self, errand: int) -> bool:
+        goal = self.errands[errand].goal
+        meshes = (*self.errands[errand].starts, *([self.found] if self.found else []))
+        return any(goal.reached(m, self.at_least) and goal.accepts(m) for m in meshes)
 
     def start_walks(self, workers: int) -> None:
         while self.waiting and len(self.walks) < workers:
@@ -275,18 +294,6 @@ class _Run:
 
 def _proof(problem: Problem, known: Network | None, conflicts: int | None) -> Iterator[ExactNews]:
     return prove(problem, known=known, conflicts=conflicts)
-
-
-def _walkers(
-    errands: Sequence[Errand], effort: int | None, seed: int, workers: int
-) -> list[_Walker]:
-    """Walkers in turn over the errands, each with a seed of its own."""
-    rounds = _WALKERS if effort is not None else max(1, -(-workers // max(1, len(errands))))
-    return [
-        _Walker(errand, 1000 * seed + len(errands) * turn + errand)
-        for turn in range(rounds)
-        for errand in range(len(errands))
-    ]
 
 
 def _key(goal: Goal, mesh: Mesh) -> tuple[object, ...]:

@@ -24,7 +24,7 @@ __all__ = ["Found", "Walk", "wander"]
 
 _CONFLICTS = 2000  # for one question; windows that need more are left
 _PATIENCE = 12  # windows without gain, for each pole, before a walk starts afresh
-_POLISH = 15  # windows for ties once the poles are known to be fewest
+_POLISH = 8  # windows for ties once the poles are known to be fewest
 _SIGN_OF_LIFE = 10  # windows between signs of life
 _TRIES = 6  # different answers looked at where a filter may reject them
 
