@@ -8,7 +8,7 @@ what built it.  A network that fails its proof is never returned.
 from __future__ import annotations
 
 from collections.abc import Callable, Mapping, Sequence
-from dataclasses import replace
+from dataclasses import dataclass, replace
 from time import monotonic
 from typing import Literal
 
@@ -23,12 +23,13 @@ from contactlogic.naming import free_name
 from contactlogic.network import Network, Pole
 from contactlogic.search.best import Best, Task, best_networks
 from contactlogic.search.portfolio import Progress
+from contactlogic.truth import Target
 
-__all__ = ["EFFORT", "Forms", "wire"]
+__all__ = ["EFFORT", "Forms", "Search", "synthesise", "wire"]
 
 Forms = Literal["ladder", "bridge", "both"]
 
-EFFORT = 100
+EFFORT = 40
 """Windows for each walker where neither effort nor seconds are given."""
 
 _CEILING = 600.0  # seconds for covers and ladder where only an effort is given
@@ -70,28 +71,68 @@ def wire(
         LimitError: a pole budget that no network found keeps.
         ProofFailed: contactlogic built a network that fails its own proof.
     """
+    return synthesise(job, Search(form, seconds, effort, seed, workers, repeaters, watch))
+
+
+@dataclass(frozen=True)
+class Search:
+    """How to search; the arguments of `wire`."""
+
+    form: Forms = "both"
+    seconds: float | None = None
+    effort: int | None = None
+    seed: int = 0
+    workers: int = 2
+    repeaters: bool = False
+    watch: Callable[[Sequence[Form], Progress], None] | None = None
+
+
+def synthesise(
+    job: Job,
+    search: Search,
+    *,
+    home: Mapping[str, Target] | None = None,
+    penalty: Callable[[Network], int] | None = None,
+) -> Result:
+    """`wire` with a judgement of its own.
+
+    Args:
+        job: what to wire.
+        search: how.
+        home: narrower wants, load by load, whose plain wiring the penalty approves of; the search
+            starts there.  None for the job's own.
+        penalty: weighs before all cost, 0 where all is well; picklable.
+    """
+    seconds, effort, seed = search.seconds, search.effort, search.seed
     if seconds is None and effort is None:
         effort = EFFORT
     deadline = monotonic() + (_CEILING if seconds is None else seconds)
-    forms: list[Form] = ["ladder", "bridge"] if form == "both" else [form]
+    forms: list[Form] = ["ladder", "bridge"] if search.form == "both" else [search.form]
     found = _covers(job, deadline, seed)
-    ladder = _ladder(job, found, deadline, seed, timed=seconds is not None)
+    at_home = job
+    if home is not None:
+        loads = tuple(replace(load, target=home[load.name]) for load in job.loads)
+        at_home = replace(job, loads=loads)
+    narrow = found if home is None else _covers(at_home, deadline, seed)
+    ladder = _ladder(at_home, narrow, deadline, seed, timed=seconds is not None)
+    watch = search.watch
     best = best_networks(
-        _task(job, repeaters),
+        replace(_task(job, search.repeaters), penalty=penalty),
         {name: [ladder] for name in forms},
         forms,
         seconds=None if seconds is None else max(0.0, deadline - monotonic()),
         effort=effort,
         conflicts=_CONFLICTS * (effort or 0),
         seed=seed,
-        workers=workers,
+        workers=search.workers,
         at_least=_relays_that_matter(job),
+        home=home,
         watch=None if watch is None else lambda progress: watch(forms, progress),
     )
-    if not repeaters and any(best.over.values()):
+    if not search.repeaters and any(best.over.values()):
         raise _over_budget(job, best)
     statuses = tuple(_status(job, name, least[0]) for name, least in found.items())
-    if repeaters:
+    if search.repeaters:
         networks, added = _with_repeaters(job, best.networks)
     else:
         networks, added = dict(best.networks), {}

@@ -1,4 +1,4 @@
-"""What a job asks for, as values: loads over rows of relays, supply, limits.
+"""What a job asks for, as values: loads over rows of relays or over a sequence, supply, limits.
 
 Files and text are read by the other modules of this package; everything past them works on
 these values alone (job file format: design.md section 5).
@@ -10,16 +10,23 @@ from collections.abc import Mapping
 from dataclasses import dataclass, field
 from typing import Literal
 
+from contactlogic.algebra import Expression
+from contactlogic.job.sequence import Pattern, SequenceTable, Timing
 from contactlogic.truth import Target
 
 __all__ = [
+    "AnyJob",
+    "DrivesJob",
     "Isolate",
     "Job",
     "Limits",
     "Load",
+    "LoadFacts",
     "LoadKind",
     "Objective",
+    "PatternJob",
     "SeparateContacts",
+    "SequenceJob",
     "Supply",
 ]
 
@@ -41,6 +48,14 @@ class Load:
     kind: LoadKind | None = None
     amps: float | None = None
     formula: str | None = None
+
+
+@dataclass(frozen=True)
+class LoadFacts:
+    """What is known of a load or coil, None where the job does not state it."""
+
+    kind: LoadKind | None = None
+    amps: float | None = None
 
 
 @dataclass(frozen=True)
@@ -79,6 +94,7 @@ class Job:
         loads: in the order of the table's columns, then of the formulas.
         listed: truth table of the rows that the table lists (all rows if there is no table).
         file: name shown in messages and reports, None if made in code.
+        stored: loads that store energy, such as slow coils with their capacitors.
     """
 
     title: str
@@ -88,6 +104,7 @@ class Job:
     supply: Supply = Supply()
     limits: Limits = field(default_factory=Limits)
     file: str | None = None
+    stored: frozenset[str] = frozenset()
 
     @property
     def targets(self) -> dict[str, Target]:
@@ -96,10 +113,81 @@ class Job:
 
     @property
     def isolated(self) -> frozenset[str]:
-        """Loads whose net may never be joined to another load that is off (section 3).
-
-        A table job has no slow coils, so "stored" isolates nothing there.
-        """
+        """Loads whose net may never be joined to another load that is off (section 3)."""
         if self.limits.isolate == "all":
             return frozenset(load.name for load in self.loads)
-        return frozenset()
+        return self.stored if self.limits.isolate == "stored" else frozenset()
+
+
+@dataclass(frozen=True)
+class SequenceJob:
+    """A sequence to wire, every state of which is listed.
+
+    Args:
+        facts: what is known of loads and coils, by name; those not named have none.
+    """
+
+    title: str
+    table: SequenceTable
+    supply: Supply = Supply()
+    facts: Mapping[str, LoadFacts] = field(default_factory=dict)
+    limits: Limits = field(default_factory=Limits)
+    file: str | None = None
+
+    @property
+    def isolated(self) -> frozenset[str]:
+        """Coils and loads whose net may never be joined to another that is off (section 3).
+
+        By default the coils of slow relays, for their capacitors.  Relays that are added later
+        are quick; where all are isolated, so must they be.
+        """
+        if self.limits.isolate == "all":
+            coils = set(self.table.columns) - set(self.table.inputs)
+            return frozenset({*coils, *self.table.loads})
+        if self.limits.isolate == "none":
+            return frozenset()
+        return frozenset({*self.table.timing.slow_release, *self.table.timing.slow_operate})
+
+
+@dataclass(frozen=True)
+class PatternJob:
+    """A pattern to wire: what the loads do in each step; the relays are chosen for it."""
+
+    title: str
+    pattern: Pattern
+    supply: Supply = Supply()
+    facts: Mapping[str, LoadFacts] = field(default_factory=dict)
+    limits: Limits = field(default_factory=Limits)
+    file: str | None = None
+
+
+@dataclass(frozen=True)
+class DrivesJob:
+    """Drives that someone has already wired, to be checked.
+
+    Args:
+        columns: the sequence's columns if there is one; else the relays with a drive in the order
+            of their keys, then, as they appear, the inputs: what no drive moves.
+        drives: the condition under which each coil is fed.
+        formulas: the text each drive came from.
+        table: the sequence that the drives are meant to run through, None if it is not known.
+    """
+
+    title: str
+    columns: tuple[str, ...]
+    drives: Mapping[str, Expression]
+    formulas: Mapping[str, str]
+    timing: Timing = field(default_factory=Timing)
+    table: SequenceTable | None = None
+    supply: Supply = Supply()
+    facts: Mapping[str, LoadFacts] = field(default_factory=dict)
+    limits: Limits = field(default_factory=Limits)
+    file: str | None = None
+
+    @property
+    def inputs(self) -> tuple[str, ...]:
+        """Columns that are moved from outside."""
+        return tuple(name for name in self.columns if name not in self.drives)
+
+
+AnyJob = Job | SequenceJob | PatternJob | DrivesJob

@@ -28,7 +28,7 @@ class Task:
     """What to search for, by name: everything of a job that the search depends on.
 
     `budgets` are most poles of a relay; with `repeaters` a relay over its budget is given
-    repeaters of as many poles, as few as possible.
+    repeaters of as many poles, as few as possible.  `penalty` as in `Goal`.
     """
 
     relays: tuple[str, ...]
@@ -38,6 +38,7 @@ class Task:
     isolated: frozenset[str] = frozenset()
     objective: Objective = "poles"
     repeaters: bool = False
+    penalty: Callable[[Network], int] | None = None
 
 
 @dataclass(frozen=True)
@@ -71,6 +72,7 @@ def best_networks(
     seed: int,
     workers: int,
     at_least: int = 0,
+    home: Mapping[str, Target] | None = None,
     watch: Callable[[Progress], None] | None = None,
 ) -> Best:
     """Improve known networks, and prove how far they can be improved.
@@ -82,6 +84,8 @@ def best_networks(
         seconds, effort, seed, workers, watch: as in `portfolio.explore`.
         conflicts: budget of the proof when running by effort.
         at_least: a bound known beforehand.
+        home: narrower wants, in the order of the task's, that the diagrams to start from are made
+            for; None for the task's own.
     """
     problem = Problem(
         task.relays,
@@ -97,7 +101,7 @@ def best_networks(
         goal = _goal(task, ladder=form == "ladder")
         meshes = [from_network(network) for network in known[form]]
         if len(task.relays) <= _MOST_RELAYS:
-            meshes += starts(list(task.targets.values()), _STARTS)
+            meshes += starts(list((home or task.targets).values()), _STARTS)
         if goal.singly or goal.separate:
             meshes = [_split(mesh, goal) for mesh in meshes]
         errands.append(Errand(tuple(meshes), goal))
@@ -123,7 +127,7 @@ def best_networks(
                 (start for start in errand.starts if errand.goal.accepts(start)),
                 key=errand.goal.cost,
             )
-        over[form] = errand.goal.excess(mesh)
+        over[form] = errand.goal.over_budget(mesh)
         networks[form] = _named(_settled(mesh, task), task, loads)
     return Best(networks, over, progress.at_least, progress.feasible, progress)
 
@@ -140,6 +144,8 @@ def _goal(task: Task, *, ladder: bool) -> Goal:
         {place[name]: most for name, most in task.budgets.items()},
         task.repeaters,
         task.objective == "contacts",
+        task.penalty,
+        (task.relays, tuple(task.targets)),
     )
 
 

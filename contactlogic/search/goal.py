@@ -66,6 +66,13 @@ class Goal:
         return not self.ladder or series_parallel(network)
 
     def excess(self, mesh: Mesh) -> int:
+        """What weighs before all cost: poles over budget and the penalty; 0 if all is well."""
+        over = self.over_budget(mesh)
+        if self.penalty is not None:
+            over += self.penalty(to_network(mesh, *self.names))
+        return over
+
+    def over_budget(self, mesh: Mesh) -> int:
         """Poles over budget, or repeaters needed where they are allowed; 0 if all is kept."""
         total = 0
         for relay, most in self.budgets.items():
@@ -81,8 +88,6 @@ class Goal:
             makes = sum(pole.make is not None for pole in own)
             for count, most in zip((makes, len(own) - makes), limits, strict=True):
                 total += _INCURABLE * max(0, count - most)
-        if self.penalty is not None:
-            total += self.penalty(to_network(mesh, *self.names))
         return total
 
     def _use(self, mesh: Mesh, relay: int) -> int:
