@@ -17,15 +17,16 @@ def least(n, loads, *, isolated=(), budgets=None, single=(), contacts=False, mos
     """Fewest poles for loads [(on, free), ...] of n relays; None if `most` are too few.
 
     isolated: numbers of loads; budgets: {relay: poles}; single: relays whose poles have one throw;
-    contacts: every pole has one throw.
+    contacts: throws wired are counted instead of poles.
     """
-    for poles in range(most + 1):
-        if possible(n, loads, poles, isolated, budgets or {}, set(single), contacts):
-            return poles
+    for size in range(most + 1):
+        throws = size if contacts else None
+        if possible(n, loads, size, isolated, budgets or {}, set(single), throws):
+            return size
     return None
 
 
-def possible(n, loads, poles, isolated, budgets, single, contacts):
+def possible(n, loads, poles, isolated, budgets, single, throws):
     nets = range(min(3 * poles + 1, 2 * poles + 1 + len(isolated)))
     top = [0]
     clauses = []
@@ -48,13 +49,17 @@ def possible(n, loads, poles, isolated, budgets, single, contacts):
             for net in nets:
                 if net > 3 * p + e + 1:
                     clauses.append([-ends[p][e][net]])
-        if contacts:
-            clauses.append([-wired[p][1], -wired[p][2]])
         for i in single:
             clauses.append([-relay[p][i], -wired[p][1], -wired[p][2]])
+    if throws is not None:
+        every = [throw for pole in wired for throw in pole[1:]]
+        clauses.extend([-throw for throw in group] for group in combinations(every, throws + 1))
     for i, limit in budgets.items():
-        for group in combinations(range(poles), limit + 1):
-            clauses.append([-relay[p][i] for p in group])
+        uses = [new() for _ in range(poles)]
+        for p in range(poles):
+            for throw in (1, 2):
+                clauses.append([-relay[p][i], -wired[p][throw], uses[p]])
+        clauses.extend([-use for use in group] for group in combinations(uses, limit + 1))
     place, nowhere = [], []
     for _ in loads:
         place.append([new() for _ in nets])

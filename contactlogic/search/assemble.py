@@ -6,6 +6,7 @@ from collections.abc import Sequence
 
 from contactlogic.check import prove
 from contactlogic.errors import ProofFailed
+from contactlogic.ladder.build import Edge, pair
 from contactlogic.network import Network, Pole
 from contactlogic.search.encoding import Ends
 from contactlogic.search.problem import Grouping, Problem, rows_of_grouping
@@ -28,7 +29,7 @@ def tidy(rows: Rows, poles: Sequence[Ends]) -> tuple[Ends, ...]:
 
 
 def assemble(problem: Problem, way: Grouping, poles: Sequence[Ends]) -> Network:
-    """Name nets and poles, and prove the result.
+    """Name nets and poles, pair single contacts as far as their nets allow, and prove the result.
 
     Raises:
         ProofFailed: the poles do not do what the problem asks.
@@ -58,6 +59,10 @@ def assemble(problem: Problem, way: Grouping, poles: Sequence[Ends]) -> Network:
             )
         )
     network = Network(problem.relays, _SUPPLY, loads, tuple(named))
+    if problem.objective == "contacts":
+        edges = [Edge(c.relay, c.make, c.common, c.throw) for c in network.contacts()]
+        paired = pair(edges, problem.relays, frozenset(problem.separate))
+        network = Network(problem.relays, _SUPPLY, loads, paired)
     proof = prove(
         network,
         problem.targets,

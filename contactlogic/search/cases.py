@@ -8,7 +8,7 @@ easy answer is found before a hard refutation is finished.  P is refuted once ea
 
 from __future__ import annotations
 
-from collections.abc import Collection, Iterable, Iterator
+from collections.abc import Collection, Iterable, Iterator, Mapping
 from dataclasses import dataclass
 from time import monotonic
 
@@ -64,14 +64,11 @@ def cases(
     for counts in compositions(kinds, poles, least, most):
         if not all(demand.met(counts) for demand in demands):
             continue
-        if _breaks_budget(problem, kinds, counts) or not symmetric.foremost(counts):
+        if not symmetric.foremost(counts):
             continue
-        yield Case(
-            problem,
-            way,
-            tuple(kind for kind, count in zip(kinds, counts, strict=True) for _ in range(count)),
-            symmetric.turnable,
-        )
+        own = _poles(problem, dict(zip(kinds, counts, strict=True)))
+        if own is not None:
+            yield Case(problem, way, own, symmetric.turnable)
 
 
 def most_poles(problem: Problem, poles: int) -> int:
@@ -83,7 +80,7 @@ def _most_by_kind(problem: Problem, poles: int) -> dict[Kind, int]:
     most = {}
     for kind in problem.kinds:
         name = problem.relays[kind.relay]
-        limit = problem.budgets.get(name, poles) if problem.objective == "poles" else poles
+        limit = problem.budgets.get(name, poles)
         if name in problem.separate:
             have = problem.separate[name]
             limit = min(limit, have.makes if kind.form == "A" else have.breaks)
@@ -91,13 +88,25 @@ def _most_by_kind(problem: Problem, poles: int) -> dict[Kind, int]:
     return most
 
 
-def _breaks_budget(problem: Problem, kinds: Iterable[Kind], counts: Iterable[int]) -> bool:
-    if problem.objective != "poles":
-        return False
-    use = dict.fromkeys(problem.relays, 0)
-    for kind, count in zip(kinds, counts, strict=True):
-        use[problem.relays[kind.relay]] += count
-    return any(use[name] > limit for name, limit in problem.budgets.items())
+def _poles(problem: Problem, counts: Mapping[Kind, int]) -> tuple[Kind, ...] | None:
+    """Poles to wire for so many of each kind, sorted; None if they break a pole budget.
+
+    Where makes and breaks are counted singly, a relay with more of them than its budget has poles
+    must pair what is over as changeovers wired on both throws.  Any network that keeps the budget
+    has so many pairs, and which of its pairs are taken does not matter.
+    """
+    poles: list[Kind] = []
+    for i, name in enumerate(problem.relays):
+        own = [kind for kind in counts if kind.relay == i]
+        budget = problem.budgets.get(name)
+        over = 0 if budget is None else max(0, sum(counts[kind] for kind in own) - budget)
+        if over and (problem.objective == "poles" or name in problem.separate):
+            return None
+        if over > min(counts[kind] for kind in own):
+            return None
+        poles += [Kind(i, "C")] * over
+        poles += [kind for kind in own for _ in range(counts[kind] - over)]
+    return tuple(sorted(poles))
 
 
 @dataclass

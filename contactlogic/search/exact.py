@@ -132,6 +132,8 @@ def _news(
     while whole.state == "open" and (most is None or whole.at_least <= most):
         if smaller is not None:
             whole.learn(smaller.work(budget, share))
+            if not smaller.feasible:
+                whole.abandon()
         part = budget.part(_WHOLE * share)
         while whole.state == "open" and (most is None or whole.at_least <= most):
             if whole.at_least > told:

@@ -37,7 +37,8 @@ class Problem:
         budgets: most poles of a relay.
         separate: relays with separate makes and breaks; each single contact counts as one.
         isolated: loads that, when off, may be joined to no other load that is off.
-        objective: count poles, or makes and breaks singly.
+        objective: count poles, or makes and breaks singly; they are paired into poles afterwards,
+            and `budgets` still mean poles.
     """
 
     relays: tuple[str, ...]

@@ -38,6 +38,7 @@ class _Smaller:
         self._seed, self._solver = seed, solver
         self._rise: Rise | None = None
         self.shares: dict[int, int] = {}  # least poles of each set of relays, as bits
+        self.feasible = True
 
     def gather(self) -> None:
         """Take over what the smaller problems show of sets of relays."""
@@ -56,6 +57,7 @@ class _Smaller:
             while rise.advance(budget):
                 pass
         self.shares[(1 << self.problem.n) - 1] = rise.at_least
+        self.feasible = rise.feasible
 
     def demands(self) -> Iterator[Demand]:
         """The shares as demands."""
@@ -90,6 +92,11 @@ class Restrictions:
                     self._known[key] = _Smaller(smaller, self._seed, self._solver)
                     self._descend(self._known[key])
                 node.next.append((tuple(kept[k] for k in order), self._known[key]))
+
+    @property
+    def feasible(self) -> bool:
+        """False if one of them is proved to have no network within its limits."""
+        return all(smaller.feasible for smaller in self._all)
 
     def work(self, budget: Budget, share: int) -> Iterator[Demand]:
         """Spend up to `share` conflicts on every smaller problem; demands on the whole problem."""

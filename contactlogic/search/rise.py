@@ -67,13 +67,17 @@ class Rise:
         self.at_least = max(self.at_least, total(self._common))
         self._settle()
 
+    def abandon(self) -> None:
+        """Note that there is no network: a smaller problem has none within the limits."""
+        self.feasible, self.state = False, "closed"
+
     def advance(self, budget: Budget) -> bool:
         """Refute one size or close; False if the budget ran out first or nothing is left to do."""
         if self.state != "open":
             return False
         problem, poles = self.problem, self.at_least
         if most_poles(problem, poles) < poles:
-            self.feasible, self.state = False, "closed"
+            self.abandon()
             return True
         level = self._level(poles)
         if level is None:
