@@ -5,16 +5,31 @@ from __future__ import annotations
 from pathlib import Path
 
 from contactlogic.errors import JobFileError, Place
-from contactlogic.job.model import Job
+from contactlogic.job.model import AnyJob, DrivesJob, Job, PatternJob, SequenceJob
 from contactlogic.job.table import Unlisted
 
-__all__ = ["read_job"]
+__all__ = ["Wirable", "read_job", "wirable_job"]
+
+Wirable = Job | SequenceJob | PatternJob
 
 _TABLES = (".csv", ".xlsx")
 _UNLISTED: dict[str, Unlisted] = {"off": "off", "free": "free"}
 
 
-def read_job(path: Path, loads: str | None, unlisted: str | None) -> Job:
+def wirable_job(path: Path, loads: str | None, unlisted: str | None) -> Wirable:
+    """As `read_job`, for commands that want wiring: not for drives that are wired already."""
+    job = read_job(path, loads, unlisted)
+    if isinstance(job, DrivesJob):
+        raise JobFileError(
+            "the drives of this job are wired already",
+            place=Place(file=str(path)),
+            expected="[table], [formulas], [sequence] or [pattern]",
+            hint=f"contactlogic recover {path} proves where they lead",
+        )
+    return job
+
+
+def read_job(path: Path, loads: str | None, unlisted: str | None) -> AnyJob:
     """The job of a TOML file, or of a bare table with the loads named on the command line.
 
     Args:

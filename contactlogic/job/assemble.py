@@ -1,24 +1,32 @@
-"""Job files and bare tables to a `Job`.
+"""Job files and bare tables to jobs.
 
-Relay order: table columns, then first appearance in the formulas.  Table rows count as `-` in
+Sequences and drives are read by `read_sequence` and `read_drives`.  Relay order of table and
+formula jobs: table columns, then first appearance in the formulas.  Table rows count as `-` in
 relays that the table lacks; formula loads are wanted in all rows.
 """
 
 from __future__ import annotations
 
-import re
-from collections.abc import Collection, Mapping, Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import replace
 from pathlib import Path
 from typing import Any, get_args
 
-from contactlogic.errors import FormulaError, JobFileError, LimitError, Place
+from contactlogic.errors import FormulaError, JobFileError, Place
 from contactlogic.formula import Expression, evaluate, names, parse
-from contactlogic.job.model import Job, Limits, Load, SeparateContacts, Supply
+from contactlogic.job.model import AnyJob, Job, Load, LoadFacts
+from contactlogic.job.read_drives import read_drives_job
+from contactlogic.job.read_sequence import read_pattern_job, read_sequence_job
 from contactlogic.job.schema import read_job_file
+from contactlogic.job.sections import (
+    formula_places,
+    read_facts,
+    read_limits,
+    supply_of,
+    title_of,
+)
 from contactlogic.job.sheet import SUFFIXES, read_sheet
 from contactlogic.job.table import (
-    MOST_LOADS,
     Grid,
     Unlisted,
     read_columns,
@@ -26,17 +34,19 @@ from contactlogic.job.table import (
     targets_of,
     too_many_inputs,
 )
-from contactlogic.job.tomlfile import first_line_of, key_lines, place_of_key
-from contactlogic.naming import check_names, did_you_mean, is_name, listed, place_of, slip_of
+from contactlogic.job.tomlfile import first_line_of, place_of_key
+from contactlogic.naming import check_names, did_you_mean, listed, place_of, slip_of
 from contactlogic.truth import MAX_INPUTS, Target
 
 __all__ = ["load_job", "load_table_job"]
 
-_MOST_FORMULA_CHARACTERS = 200_000  # of all formulas together; some ten seconds of reading
 
+def load_job(path: str | Path) -> AnyJob:
+    """Read a job file (TOML; sections in design.md section 5).
 
-def load_job(path: str | Path) -> Job:
-    """Read a table or formula job file (TOML; sections in design.md section 5).
+    Returns:
+        `Job` for [table] and [formulas], `SequenceJob` for [sequence], `PatternJob` for
+        [pattern], `DrivesJob` for [drives] (with or without the [sequence] they are meant for).
 
     Raises:
         JobError: with file, section, row and what was expected.
@@ -51,12 +61,24 @@ def load_job(path: str | Path) -> Job:
             expected="a job file in TOML, or the names of the table's loads beside it",
         )
     data, text = read_job_file(file, shown)
+    if data.drives:
+        return read_drives_job(data, text, file, place)
+    if data.sequence is not None:
+        return read_sequence_job(data, text, file, place)
+    if data.pattern is not None:
+        return read_pattern_job(data, text, file, place)
+    return _table_job(data, text, file, place)
+
+
+def _table_job(data: Any, text: str, file: Path, place: Place) -> Job:
     if data.table is None and not data.formulas:
         raise JobFileError(
-            "the job names no load", place=place, expected="a section [table] or [formulas]"
+            "the job names no load",
+            place=place,
+            expected="a section [table], [formulas], [sequence], [pattern] or [drives]",
         )
     grid = None if data.table is None else _grid(data.table, text, file, place)
-    places = _formula_places(data.formulas, text, place)
+    places = formula_places("formulas", data.formulas, text, place)
     expressions = {
         name: parse(formula, place=places[name]) for name, formula in data.formulas.items()
     }
@@ -69,20 +91,19 @@ def load_job(path: str | Path) -> Job:
     }
     for name, expression in expressions.items():
         targets[name] = Target(n, evaluate(expression, relays))
-    _check_known(data.loads, targets, "load", ["loads"], text, place)
+    facts = read_facts(data.loads, targets, text, place)
     loads = []
     for name, target in targets.items():
-        facts = data.loads.get(name)
-        kind, amps = (facts.kind, facts.amps) if facts else (None, None)
-        loads.append(Load(name, target, kind, amps, data.formulas.get(name)))
+        known = facts.get(name, LoadFacts())
+        loads.append(Load(name, target, known.kind, known.amps, data.formulas.get(name)))
     return Job(
-        file.stem if data.title is None else data.title,
+        title_of(data, file),
         relays,
         tuple(loads),
         _spread(rows, own, n),
-        Supply(data.supply.feed, data.supply.return_),
-        _limits(data.limits, relays, text, place),
-        shown,
+        supply_of(data),
+        read_limits(data.limits, relays, "input relay", text, place),
+        place.file,
     )
 
 
@@ -156,26 +177,6 @@ def _grid(table: Any, text: str, job: Path, place: Place) -> Grid:
     return Grid(relays, loads, read_rows(table.rows, len(relays), len(loads), where, first), where)
 
 
-def _formula_places(formulas: Mapping[str, str], text: str, place: Place) -> dict[str, Place]:
-    """Where each formula stands; their names, number and size are checked on the way."""
-    where = replace(place, section="formulas")
-    size = sum(map(len, formulas.values()))
-    if len(formulas) > MOST_LOADS or size > _MOST_FORMULA_CHARACTERS:
-        raise LimitError(
-            f"there are {len(formulas)} formulas with {size} characters in all",
-            place=where,
-            expected=f"at most {MOST_LOADS} formulas and {_MOST_FORMULA_CHARACTERS} characters",
-        )
-    lines = key_lines(text)
-    places = {}
-    for name in formulas:
-        number = lines.get(("formulas", name))
-        if not is_name(name):
-            check_names([name], replace(where, row=f"line {number}" if number else None))
-        places[name] = replace(where, row=f"line {number}, {name}" if number else name)
-    return places
-
-
 def _relays(
     grid: Grid | None,
     expressions: Mapping[str, Expression],
@@ -246,32 +247,3 @@ def _spread(table: int, own: int, n: int) -> int:
     for i in range(own, n):
         table |= table << (1 << i)
     return table
-
-
-def _check_known(
-    given: Collection[str],
-    known: Collection[str],
-    what: str,
-    path: list[str],
-    text: str,
-    place: Place,
-) -> None:
-    for name in given:
-        if name not in known:
-            where = replace(place_of_key(text, [*path, name], place), section=path[0])
-            raise JobFileError(
-                f"there is no {what} {name}",
-                place=where,
-                expected=listed(known),
-                hint=did_you_mean(name, known),
-            )
-
-
-def _limits(data: Any, relays: Sequence[str], text: str, place: Place) -> Limits:
-    _check_known(data.poles, relays, "input relay", ["limits", "poles"], text, place)
-    _check_known(data.contacts, relays, "input relay", ["limits", "contacts"], text, place)
-    separate = {}
-    for name, form in data.contacts.items():
-        counts = {letter: int(number) for number, letter in re.findall("([0-9]+)([AB])", form)}
-        separate[name] = SeparateContacts(counts.get("A", 0), counts.get("B", 0))
-    return Limits(dict(data.poles), separate, data.isolate, data.objective)

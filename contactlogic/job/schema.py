@@ -10,6 +10,7 @@ from typing import TYPE_CHECKING, Any
 
 from contactlogic.errors import JobFileError, Place
 from contactlogic.job.model import Isolate, LoadKind, Objective
+from contactlogic.job.sequence import Memory, Stepping
 from contactlogic.job.table import Unlisted
 from contactlogic.job.tomlfile import place_of_key, read_toml
 from contactlogic.naming import did_you_mean, shortened
@@ -19,8 +20,15 @@ if TYPE_CHECKING:
 
 __all__ = ["read_job_file"]
 
-_OTHER_JOBS = ("sequence", "timing", "drives", "pattern")
-"""Sections of other kinds of job."""
+_KINDS = {
+    "table": ("formulas",),
+    "formulas": ("table",),
+    "sequence": ("timing", "drives"),
+    "pattern": (),
+    "drives": ("timing", "sequence"),
+    "timing": ("sequence", "drives"),
+}
+"""Sections that say what a job is, and which of the others may stand beside each."""
 
 _EXPECTED = {
     "title": 'text such as "Sluice house"',
@@ -32,6 +40,27 @@ _EXPECTED = {
     "table.unlisted": '"off" or "free"',
     "formulas": "a section [formulas]",
     "formulas.*": 'switching algebra in quotes, such as "UP DOWN\'" or "1"',
+    "sequence": "a section [sequence]",
+    "sequence.columns": 'text such as "A B C D | STRIKE"',
+    "sequence.rows": "text with a state such as 1 0 0 1 | 1 on each line",
+    "sequence.repeat": "true or false",
+    "sequence.inputs": 'the columns moved from outside, such as "P"; "" for none',
+    "sequence.inputs_return": "true or false",
+    "sequence.branches": 'a list such as [{ after = 3, when = "P", goto = 7 }]',
+    "sequence.branches.*": '{ after = 3, when = "P", goto = 7 }',
+    "sequence.branches.*.after": "a row, counted from 1",
+    "sequence.branches.*.when": 'an input such as "P", or "P\'" for its release',
+    "sequence.branches.*.goto": "a row, counted from 1",
+    "sequence.memory": '"allowed" or "forbidden"',
+    "timing": "a section [timing]",
+    "timing.slow_release": 'relays, such as "A B"; "" for none',
+    "timing.slow_operate": 'relays, such as "A B"; "" for none',
+    "drives": "a section [drives]",
+    "drives.*": 'switching algebra in quotes, such as "B\' C" or "1"',
+    "pattern": "a section [pattern]",
+    "pattern.loads": 'text such as "RED AMBER GREEN"',
+    "pattern.rows": "text with the loads of a step, such as 1 0 0, on each line",
+    "pattern.step": '"slow", "ring" or "pulse"',
     "supply": "a section [supply]",
     "supply.feed": 'a label such as "+24 V"',
     "supply.return": 'a label such as "0 V"',
@@ -51,30 +80,48 @@ _EXPECTED = {
 
 
 def read_job_file(path: Path, shown: str) -> tuple[Any, str]:
-    """The validated contents of a table or formula job file, and its text.
+    """The validated contents of a job file of any kind, and its text.
 
     Raises:
-        JobFileError: unreadable, not TOML, unknown keys, wrong types, or another kind of job.
+        JobFileError: unreadable, not TOML, unknown keys, wrong types, or sections that do not go
+            together.
     """
     place = Place(file=shown)
     data, text = read_toml(path, place)
     if not data:
         raise JobFileError(
-            "the file is empty", place=place, expected="a job with [table] or [formulas]"
+            "the file is empty",
+            place=place,
+            expected="a job with [table], [formulas], [sequence], [pattern] or [drives]",
         )
-    for section in _OTHER_JOBS:
-        if section in data:
-            raise JobFileError(
-                f"this is another kind of job: it has a section [{section}]",
-                place=place_of_key(text, [section], place),
-                expected="[table] or [formulas]: this command wires jobs of those",
-            )
+    _check_kind(data, text, place)
     from pydantic import ValidationError
 
     try:
         return _model().model_validate(data), text
     except ValidationError as error:
         raise _translated(error, data, text, place) from None
+
+
+def _check_kind(data: dict[str, Any], text: str, place: Place) -> None:
+    kinds = [section for section in data if section in _KINDS]
+    for section in kinds[1:]:
+        first = next((kind for kind in kinds if section not in (kind, *_KINDS[kind])), None)
+        if first:
+            beside = [f"[{kind}]" for kind in _KINDS[first]]
+            raise JobFileError(
+                f"[{section}] cannot stand beside [{first}]: they are different kinds of job",
+                place=place_of_key(text, [section], place),
+                expected=" or ".join(beside) + f" beside [{first}]"
+                if beside
+                else f"none of these beside [{first}]: its relays and their timing are chosen",
+            )
+    if kinds == ["timing"]:
+        raise JobFileError(
+            "[timing] stands alone",
+            place=place_of_key(text, ["timing"], place),
+            expected="[sequence] or [drives] beside it",
+        )
 
 
 def _translated(
@@ -84,11 +131,21 @@ def _translated(
     path = [str(part) for part in first["loc"]]
     pattern = _pattern(path)
     section = path[0] if len(path) > 1 else None
-    where = replace(place_of_key(text, path[:3], place), section=section)
+    branch = path[2:3] if pattern.startswith("sequence.branches.*") else []  # its number, from 0
+    named = [part for part in path if part not in branch]
+    where = replace(place_of_key(text, named[:3], place), section=section)
+    if first["type"] == "missing":
+        return JobFileError(
+            f"{f'branch {int(branch[0]) + 1}' if branch else f'[{section}]'} has no {path[-1]}",
+            place=where,
+            expected=f"{path[-1]} = {_EXPECTED[pattern]}",
+        )
     if first["type"] == "extra_forbidden":
         return _unknown_key(path, pattern, isinstance(data.get(path[0]), dict), where)
     within = path[-1].isdigit() and pattern == "table.loads"  # an entry of a list
     key = ".".join(path[1 if section else 0 : -1 if within else None])
+    if branch:
+        key = " of ".join([*path[3:], f"branch {int(branch[0]) + 1}"])
     expected = _EXPECTED.get(pattern, first["msg"])
     value = first["input"]
     allowed = re.findall(r'"(\w+)"', expected) if first["type"] == "literal_error" else []
@@ -132,9 +189,11 @@ def _value(value: Any) -> str:
 def _pattern(path: list[str]) -> str:
     """The key's place with the user's own names as `*`."""
     parts = list(path)
-    if parts[:1] in (["formulas"], ["loads"]) and len(parts) > 1:
+    if parts[:1] in (["formulas"], ["loads"], ["drives"]) and len(parts) > 1:
         parts[1] = "*"
     if parts[:2] in (["limits", "poles"], ["limits", "contacts"]) and len(parts) > 2:
+        parts[2] = "*"
+    if parts[:2] == ["sequence", "branches"] and len(parts) > 2:
         parts[2] = "*"
     if parts[:2] == ["table", "loads"]:
         parts = parts[:2]
@@ -167,6 +226,29 @@ def _model() -> type[BaseModel]:
         loads: list[str] | None = None
         unlisted: Unlisted | None = None
 
+    class Branch(Strict):
+        after: int
+        when: str
+        goto: int
+
+    class Sequence(Strict):
+        columns: str
+        rows: str
+        repeat: bool = True
+        inputs: str = ""
+        inputs_return: bool = True
+        branches: list[Branch] = Field(default_factory=list)
+        memory: Memory = "allowed"
+
+    class Timing(Strict):
+        slow_release: str = ""
+        slow_operate: str = ""
+
+    class Pattern(Strict):
+        loads: str
+        rows: str
+        step: Stepping
+
     class Supply(Strict):
         feed: str | None = None
         return_: Annotated[str | None, Field(alias="return")] = None
@@ -185,6 +267,10 @@ def _model() -> type[BaseModel]:
         title: str | None = None
         table: Table | None = None
         formulas: dict[str, str] = Field(default_factory=dict)
+        sequence: Sequence | None = None
+        timing: Timing = Timing()
+        drives: dict[str, str] = Field(default_factory=dict)
+        pattern: Pattern | None = None
         supply: Supply = Supply()
         loads: dict[str, LoadFacts] = Field(default_factory=dict)
         limits: Limits = Limits()

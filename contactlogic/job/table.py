@@ -23,6 +23,7 @@ __all__ = [
     "Grid",
     "GridRow",
     "Unlisted",
+    "no_value",
     "read_columns",
     "read_rows",
     "targets_of",
@@ -148,10 +149,15 @@ def _ragged(row: GridRow, before: int, inputs: int, loads: int, place: Place) ->
     elif bars:
         found = f"{before} before the | and {len(row.cells) - before} after it"
     run_on = any(len(cell) > 1 and _MARKS.issuperset(cell) for cell in row.cells)
+    expected = f"{inputs} before the | and {loads} after it, as in columns"
+    if not inputs:
+        expected = f"{loads}, as in loads"
+    elif not loads:
+        expected = f"{inputs}, as in columns"
     return TableError(
         f"the row has {found}",
         place=replace(place, row=row.label, line=row.text),
-        expected=f"{inputs} before the | and {loads} after it, as in columns",
+        expected=expected,
         hint="separate the cells by spaces" if run_on else None,
     )
 
@@ -235,15 +241,21 @@ class _Rows:
 
 def _illegal(grid: Grid, row: GridRow) -> TableError:
     at = next(k for k, cell in enumerate(row.cells) if cell not in _MARKS)
+    return no_value(row, at, (*grid.relays, *grid.loads)[at], grid.place)
+
+
+def no_value(
+    row: GridRow, at: int, column: str, place: Place, expected: str = "0, 1 or -"
+) -> TableError:
+    """The refusal of cell number `at` of a row, which is none of the values expected."""
     cell = row.cells[at]
     hint = _HABITS.get(cell) or _HABITS.get(cell.lower())
     if len(cell) > 1 and _MARKS.issuperset(cell):
         hint = "separate the cells by spaces"
-    column = (*grid.relays, *grid.loads)[at]
     return TableError(
         f"{shortened(cell)} is no value of {column}" if cell else f"{column} has no value",
-        place=row.place(at, grid.place),
-        expected="0, 1 or -",
+        place=row.place(at, place),
+        expected=expected,
         hint=hint,
     )
 

@@ -14,6 +14,7 @@ from dataclasses import replace
 from itertools import combinations, permutations, product
 
 from contactlogic.errors import InternalError, Place, TableError
+from contactlogic.job.sequence import SequenceTable, moves_to_make
 from contactlogic.sequence.steps import (
     Ambiguity,
     Expansion,
@@ -22,7 +23,6 @@ from contactlogic.sequence.steps import (
     clash,
     expand,
 )
-from contactlogic.sequence.table import SequenceTable, moves_to_make
 
 __all__ = ["add_memory", "resolve"]
 

@@ -15,31 +15,13 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
-from typing import Literal
 
 from contactlogic.errors import Place, TableError
-from contactlogic.sequence.table import (
-    Row,
-    SequenceTable,
-    Timing,
-    state_text,
-)
+from contactlogic.job.sequence import Pattern, Row, SequenceTable, Timing, state_text
 
-__all__ = ["Pattern", "PatternChoice", "choose_relays", "cyclic_code"]
-
-Stepping = Literal["slow", "ring", "pulse"]
+__all__ = ["PatternChoice", "choose_relays", "cyclic_code"]
 
 Loads = tuple[int | None, ...]
-
-
-@dataclass(frozen=True)
-class Pattern:
-    """What each load does in each step, and how the steps follow on each other."""
-
-    loads: tuple[str, ...]
-    rows: tuple[Loads, ...]
-    step: Stepping
-    file: str | None = None
 
 
 @dataclass(frozen=True)

@@ -10,6 +10,7 @@ from collections.abc import Callable, Mapping
 from typing import Any, Literal
 
 from contactlogic.errors import LimitError
+from contactlogic.job.sequence import Timing
 from contactlogic.network import Network
 from contactlogic.sequence.drives import ContactDrives, Drives, FormulaDrives
 from contactlogic.sequence.groups import GroupMotion
@@ -17,7 +18,6 @@ from contactlogic.sequence.motion import Motion, MoveRules, build_motion
 from contactlogic.sequence.recovery import Recovery, Wanted, recover
 from contactlogic.sequence.space import Watch
 from contactlogic.sequence.steps import Expansion
-from contactlogic.sequence.table import Timing
 from contactlogic.sequence.wants import ends, ways
 
 __all__ = [

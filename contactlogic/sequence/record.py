@@ -4,8 +4,8 @@ from __future__ import annotations
 
 from typing import Any
 
+from contactlogic.job.sequence import state_text
 from contactlogic.sequence.recovery import Recovery
-from contactlogic.sequence.table import state_text
 
 __all__ = ["SCHEMA", "recovery_json"]
 

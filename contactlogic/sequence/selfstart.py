@@ -11,10 +11,10 @@ from __future__ import annotations
 from collections.abc import Mapping
 from dataclasses import dataclass, replace
 
+from contactlogic.job.sequence import Timing
 from contactlogic.network import Network
 from contactlogic.sequence.prove import prove_network
 from contactlogic.sequence.steps import Expansion
-from contactlogic.sequence.table import Timing
 from contactlogic.truth import Target
 
 __all__ = ["Recovers", "homing"]

@@ -12,7 +12,7 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 
 from contactlogic.errors import TableError
-from contactlogic.sequence.table import (
+from contactlogic.job.sequence import (
     Branch,
     SequenceTable,
     Timing,

@@ -17,11 +17,11 @@ from functools import reduce
 import biodivine_aeon
 
 from contactlogic.algebra import Break, Exclusive, Name, Parallel, Series
+from contactlogic.job.sequence import Row, SequenceTable, Timing
 from contactlogic.sequence.drives import FormulaDrives, formula_drive
 from contactlogic.sequence.motion import MoveRules, build_motion
 from contactlogic.sequence.prove import prove_drives
 from contactlogic.sequence.steps import expand
-from contactlogic.sequence.table import Row, SequenceTable, Timing
 from contactlogic.sequence.traps import traps
 
 

@@ -34,12 +34,8 @@ TOML = {
     "not TOML: JSON": '{"table": 3}\n',
     "not TOML: nested too deeply": "title = " + "[" * 100_000,
     "not TOML: a number of thousands of digits": "title = " + "9" * 5000,
-    "another kind of job: a sequence": '[sequence]\ncolumns = "A B | STRIKE"\n',
-    "another kind of job: a pattern": 'title = "Lights"\n\n[pattern]\nloads = "RED"\n',
-    "another kind of job: timing beside formulas": formulas(LAMP="UP")
-    + '[timing]\nslow_release = "UP"\n',
     "unknown section": '[tabel]\ncolumns = "UP | LAMP"\n',
-    "unknown section, like none": '[wiring]\ncolour = "red"\n',
+    "unknown section, like none": '[cabinet]\ncolour = "red"\n',
     "unknown key": '[table]\ncolums = "UP | LAMP"\nrows = "0 | 1"\n',
     "unknown key on top": 'titel = "Gate"\n' + WHOLE,
     "key in the wrong place": 'columns = "UP | LAMP"\n',
@@ -143,6 +139,102 @@ TOML = {
     "a load of a table file named twice": in_file('["LAMP", "LAMP"]'),
 }
 """Job files that stand alone."""
+
+RING = "1 1 0 0 | 0\n0 1 1 0 | 1\n0 0 1 1 | 0\n1 0 0 1 | 1"
+
+
+def sequence(rows: str = RING, columns: str = "A B C D | STRIKE", more: str = "") -> str:
+    """A job file with a sequence of its own."""
+    return f'[sequence]\ncolumns = "{columns}"\nrows = """\n{rows}\n"""\n{more}'
+
+
+def pattern(rows: str = "1 0 0\n1 1 0\n0 0 1", more: str = 'step = "ring"\n') -> str:
+    """A job file with a pattern of three lights."""
+    return f'[pattern]\nloads = "RED AMBER GREEN"\nrows = """\n{rows}\n"""\n{more}'
+
+
+def drives(more: str = "", **relays: str) -> str:
+    """A job file with drives."""
+    return "[drives]\n" + "".join(f'{relay} = "{text}"\n' for relay, text in relays.items()) + more
+
+
+PRESS = "0 0 | 0\n1 0 | 0\n1 1 | 1\n0 1 | 1"  # P, then A follows; no way back
+
+SEQUENCES = {
+    "table beside a sequence": sequence() + WHOLE,
+    "formulas beside drives": drives(A="B'") + formulas(LAMP="UP"),
+    "drives beside a pattern": pattern() + drives(A="B'"),
+    "timing beside a pattern": pattern() + '[timing]\nslow_release = "A"\n',
+    "timing beside formulas": formulas(LAMP="UP") + '[timing]\nslow_release = "UP"\n',
+    "timing alone": '[timing]\nslow_release = "A"\n',
+    "no drive": "[drives]\n",
+    "no rows": '[sequence]\ncolumns = "A B | STRIKE"\n',
+    "unknown key": sequence(more="repaet = true\n"),
+    "key of a table": sequence(more='unlisted = "off"\n'),
+    "wrong type: repeat": sequence(more='repeat = "yes"\n'),
+    "wrong type: inputs": sequence(more='inputs = ["P"]\n'),
+    "wrong type: branches": sequence(more='branches = "P"\n'),
+    "wrong type: a branch": sequence(more="branches = [7]\n"),
+    "wrong type: goto": sequence(more='branches = [{ after = 1, when = "P", goto = "3" }]\n'),
+    "wrong value: memory": sequence(more='memory = "alowed"\n'),
+    "wrong value: step": pattern(more='step = "rings"\n'),
+    "branch without goto": sequence(more='branches = [{ after = 1, when = "P" }]\n'),
+    "branch with a key too many": sequence(
+        more='branches = [{ after = 1, when = "P", goto = 2, if = "A" }]\n'
+    ),
+    "columns with two bars": sequence(columns="A B | C D | STRIKE"),
+    "columns without a relay": sequence(columns="| STRIKE"),
+    "column named twice": sequence(columns="A B C A | STRIKE"),
+    "column and load that differ in case": sequence(columns="A B C D | d"),
+    "column that is a number": sequence(columns="A B C 4 | STRIKE"),
+    "too many columns": sequence(columns=" ".join(f"K{i}" for i in range(65)) + " | STRIKE"),
+    "ragged row": sequence(RING.replace("0 1 1 0 | 1", "0 1 1 | 1")),
+    "ragged row without loads": sequence("1 0\n0 1 1\n", columns="A B"),
+    "illegal cell": sequence(RING.replace("0 1 1 0 | 1", "0 1 2 0 | 1")),
+    "both values in a column": sequence(RING.replace("0 1 1 0 | 1", "0 - 1 0 | 1")),
+    "illegal cell of a load": sequence(RING.replace("0 1 1 0 | 1", "0 1 1 0 | x")),
+    "one row": sequence("1 1 0 0 | 0"),
+    "unknown input": sequence(more='inputs = "P"\n'),
+    "every column an input": sequence("0 | 0\n1 | 1", "P | LAMP", 'inputs = "P"\n'),
+    "slow relay that is no column": sequence(more='[timing]\nslow_release = "A B CC"\n'),
+    "slow input": sequence(PRESS, "P A | LAMP", 'inputs = "P"\n[timing]\nslow_operate = "P"\n'),
+    "slow relay named twice": sequence(more='[timing]\nslow_operate = "A, A"\n'),
+    "branch that waits for no input": sequence(
+        PRESS, "P A | LAMP", 'inputs = "P"\nbranches = [{ after = 1, when = "A", goto = 3 }]\n'
+    ),
+    "branch to a row that is not there": sequence(
+        PRESS, "P A | LAMP", 'inputs = "P"\nbranches = [{ after = 1, when = "P", goto = 9 }]\n'
+    ),
+    "branch of a move that leads elsewhere": sequence(
+        PRESS, "P A | LAMP", 'inputs = "P"\nbranches = [{ after = 1, when = "P", goto = 3 }]\n'
+    ),
+    "branch from a row that does not wait": sequence(
+        PRESS, "P A | LAMP", 'inputs = "P"\nbranches = [{ after = 2, when = "P\'", goto = 4 }]\n'
+    ),
+    "facts of an unknown coil": sequence(more='[loads]\nAA = { kind = "coil" }\n'),
+    "poles of an unknown relay": sequence(more="[limits]\npoles = { E = 2 }\n"),
+    "pattern without loads": '[pattern]\nloads = ""\nrows = "1"\nstep = "ring"\n',
+    "pattern without a step": pattern(more=""),
+    "pattern of one row": pattern("1 0 0"),
+    "pattern: ragged row": pattern("1 0 0\n1 1"),
+    "pattern: illegal cell": pattern("1 0 0\n1 2 0"),
+    "pattern: load named twice": pattern().replace("GREEN", "RED"),
+    "pattern: facts of an unknown load": pattern() + '[loads]\nGREN = { kind = "lamp" }\n',
+    "drive: does not parse": drives(A="B' +"),
+    "drive: bad name": '[drives]\n"K 1" = "A"\n',
+    "drive: names that differ in case": drives(A="B b'"),
+    "drive: relays that differ in case": drives(K="B'", k="B"),
+    "drive: misspelt relay": drives(LATCH="LTACH + START", STEP="LATCH"),
+    "drives: too many": drives(A=" + ".join(f"K{i}" for i in range(64))),
+    "drives: slow relay that is none": drives('[timing]\nslow_release = "AA"\n', A="B'", B="A"),
+    "drives: slow input": drives('[timing]\nslow_operate = "P"\n', A="P"),
+    "drives: facts of what is none": drives('[loads]\nAA = { kind = "coil" }\n', A="B'"),
+    "drive of an input": sequence(PRESS, "P A | LAMP", 'inputs = "P"\n') + drives(P="A", A="P"),
+    "drive of no column": sequence(PRESS, "P A | LAMP", 'inputs = "P"\n') + drives(A="P", B="A"),
+    "drive that names no column": sequence(PRESS, "P A | LAMP", 'inputs = "P"\n') + drives(A="P B"),
+    "drive missing": sequence() + drives(A="D", B="A", C="B"),
+}
+"""Files of sequence, pattern and drives jobs."""
 
 CSV = {
     "empty": "",

@@ -6,17 +6,17 @@ import re
 from pathlib import Path
 
 import pytest
-from input.refused_jobs import CSV, TOML
+from input.refused_jobs import CSV, SEQUENCES, TOML
 
 from contactlogic.errors import JobError
 from contactlogic.job import load_job, load_table_job, sheet, table
 
-GOLDEN = Path(__file__).parent / "golden" / "refusals.txt"
+GOLDEN = Path(__file__).parent / "golden"
 
 
-def golden() -> dict[str, str]:
+def golden(file: str = "refusals.txt") -> dict[str, str]:
     """Message by case."""
-    text = GOLDEN.read_text(encoding="utf-8")
+    text = (GOLDEN / file).read_text(encoding="utf-8")
     return {
         name: message.strip("\n")
         for name, message in re.findall(r"^## (.*)\n((?:(?!## ).*\n)*)", text, re.MULTILINE)
@@ -44,13 +44,22 @@ def test_bare_table_is_refused(case: str) -> None:
     assert str(caught.value) == golden()[f"gate.csv: {case}"]
 
 
+@pytest.mark.parametrize("case", SEQUENCES)
+def test_sequence_job_is_refused(case: str) -> None:
+    Path("ring.toml").write_text(SEQUENCES[case], encoding="utf-8")
+    with pytest.raises(JobError) as caught:
+        load_job("ring.toml")
+    assert str(caught.value) == golden("sequence_refusals.txt")[case]
+
+
 def test_golden_text_has_no_case_too_many() -> None:
     cases = [f"job.toml: {case}" for case in TOML] + [f"gate.csv: {case}" for case in CSV]
     assert list(golden()) == cases
+    assert list(golden("sequence_refusals.txt")) == list(SEQUENCES)
 
 
 def test_messages_are_short() -> None:
-    for case, message in golden().items():
+    for case, message in (golden() | golden("sequence_refusals.txt")).items():
         assert len(message.splitlines()) <= 5, case
         assert max(map(len, message.splitlines())) <= 160, case
 
@@ -122,7 +131,7 @@ def test_too_many_rows(monkeypatch: pytest.MonkeyPatch) -> None:
         load_table_job("gate.csv", ["LAMP"])
     assert str(caught.value) == (
         "gate.csv: the table is too large\n"
-        "  expected: at most 100 rows, 1088 columns, 5000000 cells"
+        "  expected: at most 100 rows, 1088 columns, 3000000 cells"
     )
 
 

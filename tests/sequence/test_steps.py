@@ -10,16 +10,17 @@ from hypothesis import strategies as st
 from sequence.stepping import Sequencer, from_targets
 
 from contactlogic.errors import TableError
-from contactlogic.sequence.memory import resolve
-from contactlogic.sequence.pattern import Pattern, choose_relays, cyclic_code
-from contactlogic.sequence.steps import ambiguities, expand
-from contactlogic.sequence.table import (
+from contactlogic.job.sequence import (
     Branch,
+    Pattern,
     Row,
     SequenceTable,
     Timing,
     state_text,
 )
+from contactlogic.sequence.memory import resolve
+from contactlogic.sequence.pattern import choose_relays, cyclic_code
+from contactlogic.sequence.steps import ambiguities, expand
 from contactlogic.sequence.wants import (
     drive_targets,
     ends,

@@ -7,13 +7,13 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
+from contactlogic.job.sequence import Row, SequenceTable, Timing
 from contactlogic.sequence.drives import TableDrives
 from contactlogic.sequence.motion import MoveRules, build_motion
 from contactlogic.sequence.prove import prove_drives
 from contactlogic.sequence.recovery import recover
 from contactlogic.sequence.steps import expand
 from contactlogic.sequence.symbolic import symbolic_motion
-from contactlogic.sequence.table import Row, SequenceTable, Timing
 from contactlogic.sequence.traps import traps
 
 

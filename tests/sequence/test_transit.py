@@ -8,9 +8,9 @@ import networkx as nx
 from hypothesis import given, settings
 from strategies import networks
 
+from contactlogic.job.sequence import Timing
 from contactlogic.network import Network, Pole
 from contactlogic.sequence.prove import network_motion
-from contactlogic.sequence.table import Timing
 from contactlogic.sequence.transit import transits
 
 

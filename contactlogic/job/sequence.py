@@ -1,24 +1,32 @@
-"""A sequence as listed by the user, and what makes it unusable.
+"""A sequence or a pattern as listed by the user, and what makes it unusable.
 
 States are numbers: column `i` is bit `i`, as for rows of a truth table.
 """
 
 from __future__ import annotations
 
+from collections.abc import Mapping
 from dataclasses import dataclass, field
 from typing import Literal
 
 from contactlogic.errors import Place, TableError
+from contactlogic.naming import did_you_mean, listed, place_of
 
 __all__ = [
     "Branch",
+    "Memory",
+    "Pattern",
     "Row",
     "SequenceTable",
+    "Stepping",
     "Timing",
     "check_table",
     "moves_to_make",
     "state_text",
 ]
+
+Memory = Literal["allowed", "forbidden"]
+Stepping = Literal["slow", "ring", "pulse"]
 
 
 @dataclass(frozen=True)
@@ -47,10 +55,15 @@ class Branch:
 
 @dataclass(frozen=True)
 class Row:
-    """One listed state: a 0 or 1 for each column, and 0, 1 or None (free) for each load."""
+    """One listed state: a 0 or 1 for each column, and 0, 1 or None (free) for each load.
+
+    `label` is what the user calls it ("row 3, line 12") and `text` how it is written there.
+    """
 
     columns: tuple[int, ...]
     loads: tuple[int | None, ...] = ()
+    label: str | None = field(default=None, compare=False)
+    text: str | None = field(default=None, compare=False)
 
     @property
     def state(self) -> int:
@@ -67,6 +80,7 @@ class SequenceTable:
         rows: the listed states, in order.
         inputs: the columns that are moved from outside.
         inputs_return: whether the operator goes on operating the inputs.
+        places: where the file says what: by key, with the line for a caret.
     """
 
     columns: tuple[str, ...]
@@ -76,13 +90,32 @@ class SequenceTable:
     inputs: tuple[str, ...] = ()
     inputs_return: bool = True
     branches: tuple[Branch, ...] = ()
-    memory: Literal["allowed", "forbidden"] = "allowed"
+    memory: Memory = "allowed"
     timing: Timing = field(default_factory=Timing)
     file: str | None = None
+    places: Mapping[str, Place] = field(default_factory=dict, compare=False, repr=False)
 
     def place(self, row: int | None = None) -> Place:
-        """Where a row stands, for messages."""
-        return Place(self.file, "sequence", None if row is None else f"row {row}")
+        """Where a row (counted from 1) stands, for messages."""
+        if row is None or not 1 <= row <= len(self.rows):
+            return Place(self.file, "sequence")
+        written = self.rows[row - 1]
+        return Place(self.file, "sequence", written.label or f"row {row}", written.text)
+
+    def place_of(self, key: str, name: str) -> Place:
+        """Where a key of the job names a column or anything else, with a caret under it."""
+        place = self.places.get(key, self.place())
+        return place if place.line is None else place_of(name, place.line, place)
+
+
+@dataclass(frozen=True)
+class Pattern:
+    """What each load does in each step, and how the steps follow on each other."""
+
+    loads: tuple[str, ...]
+    rows: tuple[tuple[int | None, ...], ...]
+    step: Stepping
+    file: str | None = None
 
 
 def state_text(state: int, n: int) -> str:
@@ -109,30 +142,38 @@ def check_table(table: SequenceTable) -> None:
     Raises:
         TableError: what is wrong, and in which row.
     """
-    known = set(table.columns)
     named = (
         ("inputs", table.inputs),
         ("slow_release", table.timing.slow_release),
         ("slow_operate", table.timing.slow_operate),
-        ("branches", tuple(branch.when.removesuffix("'") for branch in table.branches)),
     )
     for key, names in named:
         for name in names:
-            if name not in known:
+            if name not in table.columns:
                 raise TableError(
                     f"{key} names {name}, which is no column of the sequence",
-                    place=table.place(),
-                    expected="one of " + " ".join(table.columns),
+                    place=table.place_of(key, name),
+                    expected=listed(table.columns),
+                    hint=did_you_mean(name, table.columns),
                 )
-    for name in (*table.timing.slow_release, *table.timing.slow_operate):
-        if name in table.inputs:
-            raise TableError(
-                f"{name} is moved from outside, so it cannot be slow",
-                place=table.place(),
-                hint="take it out of [timing] or out of inputs",
-            )
+            if name in table.inputs and key != "inputs":
+                raise TableError(
+                    f"{name} is moved from outside, so it cannot be slow",
+                    place=table.place_of(key, name),
+                    hint=f"take it out of {key} or out of inputs",
+                )
+    if all(name in table.inputs for name in table.columns):
+        raise TableError(
+            "every column is moved from outside, so there is no relay to drive",
+            place=table.places.get("inputs", table.place()),
+            expected="at least one column that is not among inputs",
+        )
     if len(table.rows) < 2:
-        raise TableError("a sequence needs at least two rows", place=table.place())
+        raise TableError(
+            "a sequence needs at least two rows",
+            place=table.place(),
+            expected="a row for each state, in order",
+        )
     _check_branches(table)
 
 
@@ -140,18 +181,21 @@ def _check_branches(table: SequenceTable) -> None:
     count = len(table.rows)
     first: dict[int, set[str]] = {}
     for branch in table.branches:
-        if not (1 <= branch.after <= count and 1 <= branch.goto <= count):
-            raise TableError(
-                f"a branch goes from row {branch.after} to row {branch.goto}, but there are "
-                f"rows 1 to {count}",
-                place=table.place(),
-            )
+        for key, row in (("after", branch.after), ("goto", branch.goto)):
+            if not 1 <= row <= count:
+                raise TableError(
+                    f"a branch has {key} = {row}, but there are rows 1 to {count}",
+                    place=table.place_of("branches", key),
+                    expected="rows counted from 1",
+                )
         name = branch.when.removesuffix("'")
         if name not in table.inputs:
             raise TableError(
                 f"the branch after row {branch.after} waits for {name}, which is no input",
-                place=table.place(branch.after),
-                expected="one of inputs = " + (" ".join(table.inputs) or "(none)"),
+                place=table.place_of("branches", name),
+                expected=listed(table.inputs),
+                hint=did_you_mean(name, table.inputs)
+                or (f"add {name} to inputs" if name in table.columns else None),
             )
         others = first.setdefault(branch.after, set())
         if branch.after < count or table.repeat:
@@ -164,6 +208,7 @@ def _check_branches(table: SequenceTable) -> None:
             raise TableError(
                 f"after row {branch.after} the same move of {name} leads to two rows",
                 place=table.place(branch.after),
+                expected="each input to lead to one row",
                 hint="let another input take the branch",
             )
         if others - set(table.inputs):
@@ -171,6 +216,6 @@ def _check_branches(table: SequenceTable) -> None:
                 f"row {branch.after} does not wait: {min(others)} moves by itself, so the branch "
                 "is never taken",
                 place=table.place(branch.after),
-                hint="branch from a row that is left by an input",
+                expected="a row that is left by an input",
             )
         others.add(name)
