@@ -24,7 +24,7 @@ __all__ = ["SUFFIXES", "read_sheet"]
 
 SUFFIXES = (".csv", ".xlsx")
 _MOST_COLUMNS = MOST_LOADS + 64  # room to say by how much there are too many relays
-_MOST_CELLS = 5_000_000
+_MOST_CELLS = 3_000_000
 _MOST_UNPACKED = 256 << 20  # bytes; a full table of 16 inputs and 8 loads is a third of this
 
 _Line = tuple[str, list[str]]  # what the user calls the line, its cells
