@@ -107,11 +107,17 @@ def best_networks(
         errands.append(Errand(tuple(meshes), goal))
     if len(task.relays) > _MOST_RELAYS:
         effort = 0
-    best_known = min((n for form in forms for n in known[form]), key=lambda n: n.cost())
-    kept = not _goal(task, ladder=False).excess(from_network(best_known))
+    any_form = _goal(task, ladder=False)
+    smallest = min(
+        (mesh for errand in errands for mesh in errand.starts if any_form.accepts(mesh)),
+        key=any_form.cost,
+    )
+    kept = not any_form.excess(smallest)
     progress = explore(
         errands,
-        proving=Proving(problem, best_known if kept else None, conflicts, at_least),
+        proving=Proving(
+            problem, _named(smallest, task, loads) if kept else None, conflicts, at_least
+        ),
         seconds=seconds,
         effort=effort,
         seed=seed,
