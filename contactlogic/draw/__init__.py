@@ -6,12 +6,13 @@ from collections.abc import Collection, Mapping
 
 from contactlogic.design import Design
 from contactlogic.draw.arrange import SheetFacts, arrange
+from contactlogic.draw.bridge import arrange_bridge
 from contactlogic.draw.dot import dot_text
 from contactlogic.draw.render import render
 from contactlogic.job.model import LoadKind, Supply
 from contactlogic.network import Network
 
-__all__ = ["draw_ladder", "ladder_drawing", "render"]
+__all__ = ["bridge_drawing", "draw_bridge", "draw_ladder", "ladder_drawing", "render"]
 
 
 def ladder_drawing(
@@ -50,6 +51,46 @@ def draw_ladder(
 ) -> str:
     """`ladder_drawing` of a finished design."""
     return ladder_drawing(
+        design.network,
+        title=title,
+        fingerprint=design.fingerprint,
+        supply=supply,
+        kinds=kinds,
+        separate=separate,
+    )
+
+
+def bridge_drawing(
+    network: Network,
+    *,
+    title: str,
+    fingerprint: str,
+    supply: Supply = Supply(),  # noqa: B008 - frozen
+    kinds: Mapping[str, LoadKind | None] | None = None,
+    separate: Collection[str] = (),
+) -> str:
+    """The drawing of any two-directional network, as text in the DOT language for `render`.
+
+    Every net is a vertical line, every pole a symbol on a row, a changeover one symbol.
+    Parameters as for `ladder_drawing`.
+
+    Raises:
+        ValueError: a contact joins a net to itself.
+    """
+    facts = SheetFacts(title, fingerprint, supply, kinds or {}, separate)
+    return dot_text(arrange_bridge(network, facts))
+
+
+def draw_bridge(
+    design: Design,
+    *,
+    title: str,
+    supply: Supply = Supply(),  # noqa: B008 - frozen
+    kinds: Mapping[str, LoadKind | None] | None = None,
+    separate: Collection[str] = (),
+) -> str:
+    """`bridge_drawing` of a finished design."""
+    return bridge_drawing(
         design.network,
         title=title,
         fingerprint=design.fingerprint,

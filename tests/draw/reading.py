@@ -174,6 +174,10 @@ class Reader:
         return number
 
     def netlist(self) -> Netlist:
+        mixed = [g for g, numbers in self.numbers.items() if len(numbers) != 1]
+        return Netlist(self.contacts(), self.fed(), self.rails(), self.unnumbered(), mixed)
+
+    def contacts(self) -> list[ReadContact]:
         labels = self.drawing.labels
         ends = {p for line in self.wires for p in line}
         contacts = []
@@ -196,6 +200,11 @@ class Reader:
             contacts.append(
                 ReadContact(name, (marks[0], numbers[0]), (marks[1], numbers[1]), tip[1] < hinge[1])
             )
+        return contacts
+
+    def fed(self) -> dict[str, str | None]:
+        labels = self.drawing.labels
+        ends = {p for line in self.wires for p in line}
         fed = {}
         for label in labels:
             if label.text in ("X1", "A1") and not label.bold:
@@ -206,20 +215,15 @@ class Reader:
                 ]  # fmt: skip
                 close = [p for p in ends if 0 < y - p[1] < 10 and 0 < p[0] - x < 12]
                 fed[name] = self.number_at(close[0]) if close else None
-        rails = [
+        return fed
+
+    def rails(self) -> list[tuple[str, str | None]]:
+        return [
             (t.text, self.number_at(rail[0]))
             for rail in self.drawing.of("rail")
-            for t in labels
+            for t in self.drawing.labels
             if t.at[0] == rail[0][0] and 0 < t.at[1] - max(rail[0][1], rail[1][1]) < 20
         ]
-        mixed = [g for g, numbers in self.numbers.items() if len(numbers) != 1]
-        return Netlist(
-            contacts,
-            fed,
-            rails,
-            self.unnumbered(),
-            mixed,
-        )
 
     def _mark(self, terminal: Point, outwards: float) -> str:
         side = 1 if outwards > 0 else -1
