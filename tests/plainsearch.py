@@ -66,31 +66,42 @@ def possible(n, loads, poles, isolated, budgets, single, throws):
         nowhere.append(new())
         one_of([*place[-1], nowhere[-1]])
 
-    def contacts_closed(row):
-        """(literals that must hold, common, end) for every contact that may be closed."""
-        for p in range(poles):
-            for i in range(n):
-                throw = 1 if row >> i & 1 else 2
-                yield [relay[p][i], wired[p][throw]], ends[p][0], ends[p][throw]
+    def joints(row):
+        """For every pair of nets, whether a contact between them is closed, as a literal."""
+        closed = {}
+        for x, y in combinations(nets, 2):
+            closed[x, y] = closed[y, x] = new()
+            clauses.append([-closed[x, y]])  # the ways it may come about are put in below
+            known = clauses[-1]
+            for p in range(poles):
+                for i in range(n):
+                    throw = 1 if row >> i & 1 else 2
+                    holds = [relay[p][i], wired[p][throw]]
+                    for a, b in ((x, y), (y, x)):
+                        way = new()
+                        lits = [*holds, ends[p][0][a], ends[p][throw][b]]
+                        clauses.append([*(-lit for lit in lits), way])
+                        clauses.extend([-way, lit] for lit in lits)
+                        clauses.append([-way, closed[x, y]])
+                        known.append(way)
+        return closed
 
-    def cut(row, guard, ones, zeros):
+    def cut(closed, guard, ones, zeros):
         """Labels 1 at net choice `ones`, 0 at `zeros`, equal across closed contacts, if guard."""
         label = [new() for _ in nets]
-        for holds, a, b in contacts_closed(row):
-            for x in nets:
-                for y in nets:
-                    pre = [-lit for lit in [*guard, *holds, a[x], b[y]]]
-                    clauses.append([*pre, -label[x], label[y]])
-                    clauses.append([*pre, label[x], -label[y]])
+        pre = [-lit for lit in guard]
+        for (x, y), joint in closed.items():
+            clauses.append([*pre, -joint, -label[x], label[y]])
         for net in nets:
-            clauses.append([*(-g for g in guard), -ones[net], label[net]])
-            clauses.append([*(-g for g in guard), -zeros[net], -label[net]])
+            clauses.append([*pre, -ones[net], label[net]])
+            clauses.append([*pre, -zeros[net], -label[net]])
 
     yes = new()
     clauses.append([yes])
     supply = [yes if net == 0 else -yes for net in nets]
     for row in range(1 << n):
         state = []
+        closed = joints(row)
         depth = poles
         steps = [[new() for _ in nets] for _ in range(depth + 1)]
         for net in nets:
@@ -98,14 +109,11 @@ def possible(n, loads, poles, isolated, budgets, single, throws):
         for d in range(depth):
             for net in nets:
                 ways = [steps[d][net]]
-                for holds, a, b in contacts_closed(row):
-                    for here, there in ((a, b), (b, a)):
-                        for other in nets:
-                            if other != net:
-                                way = new()
-                                for lit in [*holds, steps[d][other], there[other], here[net]]:
-                                    clauses.append([-way, lit])
-                                ways.append(way)
+                for other in nets:
+                    if other != net:
+                        way = new()
+                        clauses += [[-way, steps[d][other]], [-way, closed[net, other]]]
+                        ways.append(way)
                 clauses.append([-steps[d + 1][net], *ways])
         for k, (on, free) in enumerate(loads):
             live = new()
@@ -117,7 +125,7 @@ def possible(n, loads, poles, isolated, budgets, single, throws):
             clauses.append([-live, -nowhere[k]])
             for net in nets:
                 clauses.append([-live, -place[k][net], steps[depth][net]])
-            cut(row, [-live], supply, place[k])
+            cut(closed, [-live], supply, place[k])
         for k in isolated:
             for other in range(len(loads)):
                 if other == k:
@@ -129,6 +137,6 @@ def possible(n, loads, poles, isolated, budgets, single, throws):
                     clauses += [[-both, place[k][net]], [-both, place[other][net]]]
                     shared.append(both)
                 clauses.append([-together, *shared])
-                cut(row, [-state[k], -state[other], -together], place[k], place[other])
+                cut(closed, [-state[k], -state[other], -together], place[k], place[other])
     with Solver("glucose4", bootstrap_with=clauses) as solver:
         return solver.solve()
