@@ -8,8 +8,8 @@ from contactlogic.network import Network, Pole
 from contactlogic.report.facts import Facts, as_built, longest_runs
 from contactlogic.truth import Target
 
-# LAMP: up without down, or flood. HORN: down without up. Row 7 (all three) was left open for HORN,
-# row 3 (up and down) is not listed at all.
+# LAMP: up without down, or flood. HORN: down without up. Row 6 (down in a flood) was left open for
+# HORN, row 3 (up and down) is not listed at all.
 SLUICE_JOB = Job(
     title="Sluice house",
     relays=("UP", "DOWN", "FLOOD"),
@@ -54,4 +54,30 @@ SLUICE_FACTS = Facts(
     frozenset(("LAMP", "HORN")),
     as_built(SLUICE_NETWORK),
     longest_runs(SLUICE_DESIGN.network),
+)
+
+SLUICE_BRIDGE = Design(
+    form="bridge",
+    network=Network(
+        relays=("UP", "DOWN", "FLOOD"),
+        supply="L",
+        loads={"LAMP": "n1", "HORN": "n3"},
+        poles=(
+            Pole("UP", 1, "L", "n1", "n2"),
+            Pole("DOWN", 1, "n2", "n3"),
+            Pole("FLOOD", 1, "L", "n1"),
+        ),
+    ),
+    bound=Bound(at_least=3, proven_minimum=True),
+    verified_rows=8,
+    covers=SLUICE_DESIGN.covers,
+)
+
+SLUICE_BOTH = Result(SLUICE_JOB, (SLUICE_DESIGN, SLUICE_BRIDGE), SLUICE_JOB.relays)
+
+SLUICE_BRIDGE_FACTS = Facts(
+    {"LAMP": "FLOOD + UP", "HORN": "UP' DOWN"},
+    frozenset(("LAMP", "HORN")),
+    as_built(SLUICE_BRIDGE.network),
+    longest_runs(SLUICE_BRIDGE.network),
 )

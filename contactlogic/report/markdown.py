@@ -14,14 +14,17 @@ from contactlogic.job.model import Job
 from contactlogic.report.cautions import CAUTIONS
 from contactlogic.report.facts import Facts, free_on
 from contactlogic.report.phrases import (
+    COMPARED,
     at_rest,
     bound_line,
     budget,
+    compared,
     count,
     formula,
     not_given,
     proof_line,
     run_line,
+    saving,
 )
 from contactlogic.report.text import code, markdown
 from contactlogic.report.wiring import conductors, design_name
@@ -39,6 +42,18 @@ def report(result: Result, facts: Sequence[Facts]) -> str:
     job = result.job
     names = [f"{design.form} {design.fingerprint}" for design in result.designs]
     lines = [f"# {markdown(job.title) or 'Untitled'}", "", ", ".join(names), ""]
+    if result.interrupted:
+        lines += [
+            "The search was stopped early. What it had found by then is proved all the same.",
+            "",
+        ]
+    if len(result.designs) > 1:
+        lines += [
+            *_table(COMPARED, compared(result.designs)),
+            "",
+            f"{saving(result).capitalize()}.",
+            "",
+        ]
     lines += _asked(job)
     for design, known in zip(result.designs, facts, strict=True):
         lines += _design(design, result, known)
@@ -100,7 +115,7 @@ def _design(design: Design, result: Result, facts: Facts) -> list[str]:
     lines += _table(
         ("load", "switching algebra", "longest run"),
         [
-            (markdown(load), code(formula(facts, load, len(network.relays))), facts.runs[load])
+            (markdown(load), code(formula(facts, load, len(job.relays))), facts.runs[load])
             for load in network.loads
         ],
     )
@@ -162,16 +177,16 @@ def _rows(design: Design, job: Job, facts: Facts) -> list[str]:
         "the row and left the load free, or does not list the row."
     )
     loads = list(network.loads)
-    header = ["row", *map(markdown, network.relays), *map(markdown, loads), "on though left open"]
+    header = ["row", *map(markdown, job.relays), *map(markdown, loads), "on though left open"]
     rows = []
-    for row in range(1 << len(network.relays)):
+    for row in range(1 << len(job.relays)):
         left_open = marked.get(row, {})
         cells = [
             ("1!" if load in left_open else "1") if facts.tables[load] >> row & 1 else "0"
             for load in loads
         ]
         said = ", ".join(f"{markdown(load)} ({kind})" for load, kind in left_open.items())
-        rows.append((row, *settings(row, len(network.relays)), *cells, said))
+        rows.append((row, *settings(row, len(job.relays)), *cells, said))
     note = f"{count(len(marked), 'row')} marked." if marked else "No row is marked."
     return [legend, "", note, "", *_table(header, rows)]
 

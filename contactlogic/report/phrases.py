@@ -2,24 +2,30 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping
+from collections.abc import Iterable, Mapping, Sequence
 
-from contactlogic.design import Bound, Design
+from contactlogic.design import Bound, Design, Result
 from contactlogic.job.model import Job, Limits
 from contactlogic.report.facts import Facts, constant, free_cells, free_on, on_at_rest
 
 __all__ = [
+    "COMPARED",
     "at_rest",
     "bound_line",
     "budget",
+    "compared",
     "count",
     "formula",
     "not_given",
     "proof_line",
     "run_line",
+    "saving",
 ]
 
 NOT_GIVEN = "not given"
+
+COMPARED = ("form", "poles", "contacts", "springs", "busiest relay", "bound")
+"""Headings of `compared`."""
 
 
 def count(number: int, thing: str) -> str:
@@ -88,3 +94,34 @@ def proof_line(design: Design, job: Job, facts: Facts) -> str:
         return f"{line}, none free"
     on = sum(len(loads) for loads in free_on(job, facts.tables).values())
     return f"{line}; of {count(free, 'free cell')} (load and row) {on} came out on"
+
+
+def compared(designs: Sequence[Design]) -> list[tuple[str, ...]]:
+    """The designs of a run side by side in a few figures, one line each."""
+    rows = []
+    for design in designs:
+        counts = design.network.per_relay()
+        busiest = max(counts, key=lambda name: counts[name].poles, default=None)
+        figures = (
+            len(design.network.poles),
+            sum(n.contacts for n in counts.values()),
+            sum(n.springs for n in counts.values()),
+        )
+        most = "none" if busiest is None else f"{busiest} ({counts[busiest].poles})"
+        rows.append((design.form, *map(str, figures), most, bound_line(design.bound)))
+    return rows
+
+
+def saving(result: Result) -> str:
+    """What the last design of a run saves on the first, in what the job's objective counts."""
+    singly = result.job.limits.objective == "contacts"
+    first, last = result.designs[0], result.designs[-1]
+
+    def cost(design: Design) -> int:
+        counts = design.network.per_relay().values()
+        return sum(n.contacts if singly else n.poles for n in counts)
+
+    thing = "contact" if singly else "pole"
+    saved = cost(first) - cost(last)
+    said = f"saves {count(saved, thing)}" if saved > 0 else f"saves no {thing}"
+    return f"the {last.form} {said} on the {first.form}"

@@ -13,18 +13,21 @@ from contactlogic.design import Design, Result
 from contactlogic.job.model import Job
 from contactlogic.report.facts import Facts
 from contactlogic.report.phrases import (
+    COMPARED,
     at_rest,
     bound_line,
     budget,
+    compared,
     count,
     formula,
     proof_line,
     run_line,
+    saving,
 )
 from contactlogic.report.text import one_line
 from contactlogic.report.wiring import design_name
 
-__all__ = ["design_summary", "summary"]
+__all__ = ["summary"]
 
 _UNFOLDED = 1_000_000  # columns; more than any line has
 
@@ -32,50 +35,40 @@ _UNFOLDED = 1_000_000  # columns; more than any line has
 def summary(
     result: Result, facts: Sequence[Facts], *, width: int | None, verbose: bool = False
 ) -> str:
-    """The summary of every design of a run, one after the other.
+    """What is on at rest, then every design of a run, then the designs side by side.
 
     Args:
         facts: of each design, in the order of `result.designs`.
         width: columns to fold to, None to fold nothing.
         verbose: also say what the job states and how each load's cover was found.
     """
-    parts = [
-        design_summary(design, result.job, known, width=width, verbose=verbose)
-        for design, known in zip(result.designs, facts, strict=True)
-    ]
+    parts = [_at_rest(result, facts)] if result.designs else []
+    for design, known in zip(result.designs, facts, strict=True):
+        parts.append(_design(design, result.job, known, width, verbose))
     if len(result.designs) > 1:
-        parts.append("\n".join(_side_by_side(result, width)) + "\n")
-    return "\n".join(parts)
+        parts.append(_side_by_side(result, width))
+    lines = [line for part in parts for line in (*part, "")][:-1]
+    return "\n".join(folded for line in lines for folded in _fold(line, width)) + "\n"
+
+
+def _at_rest(result: Result, facts: Sequence[Facts]) -> list[str]:
+    """Which loads are on at rest: said once where all designs agree."""
+    said = [at_rest(known.tables) for known in facts]
+    if len(set(said)) == 1:
+        return said[:1]
+    return [f"{design.form}: {text}" for design, text in zip(result.designs, said, strict=True)]
 
 
 def _side_by_side(result: Result, width: int | None) -> list[str]:
-    """The designs of a run in a few figures, and what the last saves on the first."""
-    rows = []
-    for design in result.designs:
-        counts = design.network.per_relay()
-        busiest = max(counts, key=lambda name: counts[name].poles, default="")
-        figures = (
-            len(design.network.poles),
-            sum(n.contacts for n in counts.values()),
-            sum(n.springs for n in counts.values()),
-        )
-        most = f"{busiest} ({counts[busiest].poles})" if busiest else "none"
-        row = (design.form, *map(str, figures), most, bound_line(design.bound))
-        rows.append(row)
-    header = ("form", "poles", "contacts", "springs", "busiest relay", "bound")
-    first, last = result.designs[0], result.designs[-1]
-    saved = len(first.network.poles) - len(last.network.poles)
-    said = f"saves {count(saved, 'pole')}" if saved > 0 else "saves no pole"
-    return [*_table(header, rows, width=width), "", f"the {last.form} {said} on the {first.form}"]
+    rows = compared(result.designs)
+    return [*_table(COMPARED, rows, width=width), "", saving(result)]
 
 
-def design_summary(
-    design: Design, job: Job, facts: Facts, *, width: int | None, verbose: bool = False
-) -> str:
-    """The summary of one design; ends with a line feed."""
+def _design(design: Design, job: Job, facts: Facts, width: int | None, verbose: bool) -> list[str]:
+    """The summary of one design."""
     network = design.network
-    relays = len(network.relays)
-    lines = [at_rest(facts.tables), design_name(design, job), ""]
+    relays = len(job.relays)
+    lines = [design_name(design, job), ""]
     lines += _table(
         ("load", "longest run", "as built"),
         [(load, str(facts.runs[load]), formula(facts, load, relays)) for load in network.loads],
@@ -94,8 +87,7 @@ def design_summary(
     if verbose:
         lines += [*_covers(design, width), ""]
     lines += [f"note: {one_line(note)}" for note in design.notes]
-    lines += [f"bound: {bound_line(design.bound)}", proof_line(design, job, facts)]
-    return "\n".join(folded for line in lines for folded in _fold(line, width)) + "\n"
+    return [*lines, f"bound: {bound_line(design.bound)}", proof_line(design, job, facts)]
 
 
 def _fold(line: str, width: int | None) -> list[str]:

@@ -8,21 +8,31 @@ import io
 from pathlib import Path
 
 import pytest
-from handmade import SLUICE_DESIGN, SLUICE_FACTS, SLUICE_JOB, SLUICE_NETWORK, SLUICE_RESULT
+from handmade import (
+    SLUICE_BOTH,
+    SLUICE_BRIDGE_FACTS,
+    SLUICE_DESIGN,
+    SLUICE_FACTS,
+    SLUICE_JOB,
+    SLUICE_NETWORK,
+    SLUICE_RESULT,
+)
 
 from contactlogic.design import Bound, Design, Result
 from contactlogic.job.model import Job, Limits, Load, SeparateContacts, Supply
 from contactlogic.network import Network, Pole
 from contactlogic.report.cautions import CAUTIONS
-from contactlogic.report.facts import Facts, as_built, longest_runs
+from contactlogic.report.facts import Facts, as_built, facts, longest_runs
 from contactlogic.report.markdown import report
-from contactlogic.report.phrases import budget
+from contactlogic.report.phrases import budget, compared, saving
 from contactlogic.report.summary import summary
 from contactlogic.report.wiring import conductors, rail_terminals, schedule_csv, wiring_csv
 from contactlogic.terminals import wire_numbers
 from contactlogic.truth import Target
 
 GOLDEN = Path(__file__).parent / "golden"
+
+BOTH_FACTS = [SLUICE_FACTS, SLUICE_BRIDGE_FACTS]
 
 
 def _check(name: str, text: str) -> None:
@@ -31,6 +41,10 @@ def _check(name: str, text: str) -> None:
 
 def test_summary_text() -> None:
     _check("summary.txt", summary(SLUICE_RESULT, [SLUICE_FACTS], width=None))
+
+
+def test_summary_text_of_both_forms() -> None:
+    _check("summary-both.txt", summary(SLUICE_BOTH, BOTH_FACTS, width=None))
 
 
 def test_verbose_summary_text() -> None:
@@ -221,3 +235,66 @@ def test_bounds_are_told_apart() -> None:
     assert "bound: at least 3 poles, minimum not proved\n" in summary(
         SLUICE_RESULT, [SLUICE_FACTS], width=None
     )
+
+
+def test_what_is_on_at_rest_is_said_once_or_form_by_form() -> None:
+    same = summary(SLUICE_BOTH, BOTH_FACTS, width=None)
+    assert same.count("with every relay released") == 1
+    assert same.startswith("no load is on with every relay released\n\nladder ")
+    lit = dataclasses.replace(SLUICE_BRIDGE_FACTS, tables={"LAMP": 0b1, "HORN": 0})
+    assert summary(SLUICE_BOTH, [SLUICE_FACTS, lit], width=None).startswith(
+        "ladder: no load is on with every relay released\n"
+        "bridge: on with every relay released: LAMP\n"
+        "\n"
+        "ladder "
+    )
+
+
+def test_the_saving_counts_what_the_objective_counts() -> None:
+    assert saving(SLUICE_BOTH) == "the bridge saves 1 pole on the ladder"
+    limits = dataclasses.replace(SLUICE_JOB.limits, objective="contacts")
+    by_contacts = dataclasses.replace(
+        SLUICE_BOTH, job=dataclasses.replace(SLUICE_JOB, limits=limits)
+    )
+    assert saving(by_contacts) == "the bridge saves 1 contact on the ladder"
+    twice = dataclasses.replace(SLUICE_BOTH, designs=(SLUICE_DESIGN, SLUICE_DESIGN))
+    assert saving(twice) == "the ladder saves no pole on the ladder"
+
+
+def test_designs_side_by_side() -> None:
+    assert compared(SLUICE_BOTH.designs) == [
+        ("ladder", "4", "5", "9", "DOWN (2)", "at least 3 poles, minimum not proved"),
+        ("bridge", "3", "4", "7", "UP (1)", "at least 3 poles, proved minimum"),
+    ]
+    text = report(SLUICE_BOTH, BOTH_FACTS)
+    assert "| bridge | 3 | 4 | 7 | UP (1) | at least 3 poles, proved minimum |\n" in text
+    assert "\nThe bridge saves 1 pole on the ladder.\n" in text
+    assert text.count("### As built, row by row") == 2
+
+
+def test_an_interrupted_search_is_told_in_the_report() -> None:
+    said = "The search was stopped early."
+    assert said not in report(SLUICE_RESULT, [SLUICE_FACTS])
+    stopped = dataclasses.replace(SLUICE_RESULT, interrupted=True)
+    assert said in report(stopped, [SLUICE_FACTS])
+
+
+def test_repeaters_are_listed_with_the_relay_they_follow() -> None:
+    """DOWN's second pole moved to a repeater of it."""
+    network = dataclasses.replace(
+        SLUICE_NETWORK,
+        relays=("UP", "DOWN", "FLOOD", "DOWN_2"),
+        poles=(
+            *(p for p in SLUICE_NETWORK.poles if (p.relay, p.number) != ("DOWN", 2)),
+            Pole("DOWN_2", 1, "n3", "n4"),
+        ),
+    )
+    design = dataclasses.replace(SLUICE_DESIGN, network=network)
+    result = Result(SLUICE_JOB, (design,), network.relays, {"DOWN_2": "DOWN"})
+    known = facts(design, result.repeaters)
+    assert known.tables == SLUICE_FACTS.tables
+    text = report(result, [known])
+    assert "| DOWN\\_2 | 1 | 1 | 0 | 0 | 2 | none | DOWN |\n" in text
+    rows = text.split("### As built, row by row")[1]
+    assert "| row | UP | DOWN | FLOOD | LAMP | HORN |" in rows
+    assert rows.count("\n| ") == 9  # a heading and the 8 rows of the job's own relays
