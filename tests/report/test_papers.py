@@ -297,4 +297,4 @@ def test_repeaters_are_listed_with_the_relay_they_follow() -> None:
     assert "| DOWN\\_2 | 1 | 1 | 0 | 0 | 2 | none | DOWN |\n" in text
     rows = text.split("### As built, row by row")[1]
     assert "| row | UP | DOWN | FLOOD | LAMP | HORN |" in rows
-    assert rows.count("\n| ") == 9  # a heading and the 8 rows of the job's own relays
+    assert rows.count("\n| ") == 10  # two lines of heading and the 8 rows of the job's own relays
