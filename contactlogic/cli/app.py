@@ -24,6 +24,20 @@ class Forms(StrEnum):
     both = "both"
 
 
+class Form(StrEnum):
+    """What `--form` takes where one is meant."""
+
+    ladder = "ladder"
+    bridge = "bridge"
+
+
+class Moves(StrEnum):
+    """What `--moves` takes."""
+
+    single = "single"
+    together = "together"
+
+
 app = typer.Typer(
     name="contactlogic",
     help="From a truth table to proven relay contact wiring with the fewest changeover contacts.",
@@ -163,4 +177,48 @@ def verify(
 
     with guarded(keep=str(design)):
         if not verifying.run(design, job, loads=loads, unlisted=unlisted):
+            raise typer.Exit(Status.WRONG)
+
+
+@app.command()
+def recover(
+    job: Annotated[
+        Path, typer.Argument(metavar="JOB", help="Job file with [sequence], [pattern] or [drives].")
+    ],
+    design: Annotated[
+        Path | None,
+        typer.Option(metavar="DESIGN", help="Prove the wiring of this design.json for JOB."),
+    ] = None,
+    form: Annotated[
+        Form | None, typer.Option(help="Which design of the file; all of them if not given.")
+    ] = None,
+    moves: Annotated[
+        Moves, typer.Option(help="One relay at a time, or any group of relays at once.")
+    ] = Moves.single,
+    json: Annotated[
+        bool,
+        typer.Option("--json", help="Print the recovery as JSON alone; of several, a failing one."),
+    ] = False,
+    memory: Annotated[
+        float, typer.Option(min=0.001, metavar="GIB", help="Use no more memory than this.")
+    ] = 4.0,
+    quiet: Annotated[bool, typer.Option("--quiet", "-q", help="Print errors only.")] = False,
+) -> None:
+    """Prove from all power-on states where the relays of JOB end up: 0 recovers, 1 does not."""
+    from contactlogic.cli import recovering
+
+    request = recovering.Request(
+        job=job,
+        design=design,
+        form=None if form is None else form.value,
+        moves=moves.value,
+        json=json,
+        quiet=quiet,
+        memory=int(memory * 2**30),
+    )
+    with guarded(keep=str(job)):
+        outcome = recovering.run(request)
+        if outcome.stopped:
+            raise typer.Exit(Status.STOPPED)
+        if not outcome.recovers:
             raise typer.Exit(Status.WRONG)

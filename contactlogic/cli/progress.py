@@ -9,8 +9,9 @@ from time import monotonic
 
 from contactlogic.design import Form
 from contactlogic.search.portfolio import Progress
+from contactlogic.sequence import space
 
-__all__ = ["line", "live"]
+__all__ = ["line", "live", "watching"]
 
 Watch = Callable[[Sequence[Form], Progress], None]
 
@@ -51,3 +52,55 @@ def live(wanted: bool) -> Iterator[Watch | None]:
                 screen.update(Text(line(forms, progress)), refresh=True)
 
         yield watch
+
+
+@contextmanager
+def watching(wanted: bool) -> Iterator[space.Watch]:
+    """A watch over a search that keeps one line up to date and ends it at Ctrl-C.
+
+    The first Ctrl-C lets the search give what it knows so far; another one ends it at once.
+    """
+    import signal
+    import threading
+
+    stopped = False
+
+    def stop(number: int, frame: object) -> None:
+        nonlocal stopped
+        del number, frame
+        if stopped:
+            raise KeyboardInterrupt
+        stopped = True
+
+    main = threading.current_thread() is threading.main_thread()
+    before = signal.signal(signal.SIGINT, stop) if main else None
+    try:
+        with _phases(wanted) as progress:
+            yield space.Watch(progress, lambda: stopped)
+    finally:
+        if before is not None:
+            signal.signal(signal.SIGINT, before)
+
+
+@contextmanager
+def _phases(wanted: bool) -> Iterator[Callable[[str, int], None] | None]:
+    """What shows `finding traps 3, 12 s` on one line; None where nobody looks."""
+    if not wanted or not sys.stderr.isatty():
+        yield None
+        return
+    from rich.console import Console
+    from rich.live import Live
+    from rich.text import Text
+
+    began = monotonic()
+    shown = began - _EVERY
+    with Live(console=Console(stderr=True), auto_refresh=False, transient=True) as screen:
+
+        def show(phase: str, number: int) -> None:
+            nonlocal shown
+            now = monotonic()
+            if now - shown >= _EVERY:
+                shown = now
+                screen.update(Text(f"{phase} {number}, {now - began:.0f} s"), refresh=True)
+
+        yield show

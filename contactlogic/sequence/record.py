@@ -2,21 +2,23 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from typing import Any
 
 from contactlogic.job.sequence import state_text
 from contactlogic.sequence.recovery import Recovery
+from contactlogic.sequence.transit import Transit
 
 __all__ = ["SCHEMA", "recovery_json"]
 
 SCHEMA = "contactlogic/recovery/1"
 
 
-def recovery_json(recovery: Recovery) -> dict[str, Any]:
+def recovery_json(recovery: Recovery, transits: Sequence[Transit] | None = None) -> dict[str, Any]:
     """The contract's keys, then what else is known: runs, races, whether it is complete.
 
     States are strings that list the relays in column order.  `hunting` is null or the states of
-    a loop in running order.
+    a loop in running order; `transits` is null where there is no wiring to look at.
     """
     n = len(recovery.columns)
 
@@ -60,6 +62,20 @@ def recovery_json(recovery: Recovery) -> dict[str, Any]:
                 "endings": [texts(ending) for ending in race.endings],
             }
             for race in recovery.races
+        ],
+        "transits": None
+        if transits is None
+        else [
+            {
+                "kind": transit.kind,
+                "mover": transit.mover,
+                "coil": transit.coil,
+                "states": transit.states,
+                "in_sequence": transit.in_sequence,
+                "example": text(transit.example),
+                "sure": transit.sure,
+            }
+            for transit in transits
         ],
         "traps_known": recovery.traps_known,
         "complete": recovery.complete,

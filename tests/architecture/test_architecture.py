@@ -24,6 +24,7 @@ LAYERS = (
     {"formula", "job", "network", "design", "terminals"},
     {"check", "minimize", "ladder", "search", "sequence"},
     {"synthesis"},
+    {"sequencer", "repair"},
     {"parts"},
     {"draw", "report"},
     {"cli"},
