@@ -7,12 +7,22 @@ from collections.abc import Collection, Mapping
 from contactlogic.design import Design
 from contactlogic.draw.arrange import SheetFacts, arrange
 from contactlogic.draw.bridge import arrange_bridge
+from contactlogic.draw.chart import sequence_chart
 from contactlogic.draw.dot import dot_text
 from contactlogic.draw.render import render
+from contactlogic.draw.states import state_graph
 from contactlogic.job.model import LoadKind, Supply
 from contactlogic.network import Network
 
-__all__ = ["bridge_drawing", "draw_bridge", "draw_ladder", "ladder_drawing", "render"]
+__all__ = [
+    "bridge_drawing",
+    "draw_bridge",
+    "draw_ladder",
+    "ladder_drawing",
+    "render",
+    "sequence_chart",
+    "state_graph",
+]
 
 
 def ladder_drawing(

@@ -7,9 +7,11 @@ same bytes.
 
 from __future__ import annotations
 
+from collections.abc import Mapping, Sequence
+
 from contactlogic.draw.sheet import BLACK, Circle, Line, Point, Sheet, Text, plain
 
-__all__ = ["dot_text"]
+__all__ = ["directed_text", "dot_text"]
 
 
 def dot_text(sheet: Sheet) -> str:
@@ -54,6 +56,52 @@ def dot_text(sheet: Sheet) -> str:
     return str(graph.source)
 
 
+def directed_text(
+    title: str,
+    nodes: Sequence[tuple[str, Mapping[str, str]]],
+    arrows: Sequence[tuple[str, str, Mapping[str, str]]],
+) -> str:
+    """A graph of named nodes and arrows, all with fixed positions, in the DOT language.
+
+    Args:
+        nodes: name and attributes; `label` is plain text, line breaks kept, and begins at the
+            left edge where `labeljust` is "l".
+        arrows: from, to and attributes.
+    """
+    import graphviz
+
+    graph = graphviz.Digraph(
+        "states",
+        comment=_comment(title),
+        graph_attr={"outputorder": "edgesfirst", "pad": "0", "bgcolor": "white"},
+        node_attr={"fontname": "Helvetica", "margin": "0", "fixedsize": "true"},
+        edge_attr={"fontname": "Helvetica", "fontsize": "7", "arrowsize": "0.6"},
+    )
+    for name, style in nodes:
+        graph.node(name, **_labelled(style))
+    for tail, head, style in arrows:
+        graph.edge(tail, head, **_labelled(style))
+    return str(graph.source)
+
+
+def _labelled(style: Mapping[str, str]) -> dict[str, str]:
+    attributes = dict(style)
+    if "label" in attributes:
+        attributes["label"] = _plain_label(attributes["label"])
+        if attributes.pop("labeljust", "") == "l":
+            attributes["label"] += "\\l"
+    return attributes
+
+
+def _plain_label(text: str) -> str:
+    """Text that the DOT language shows as it stands."""
+    import graphviz
+
+    # DOT labels read character entities, so an ampersand of the user's must be written as one
+    lines = text.replace("&", "&amp;").split("\n")
+    return "\\n".join(graphviz.escape(line) for line in lines)
+
+
 def _number(value: float) -> str:
     text = f"{value:.2f}".rstrip("0").rstrip(".")
     return "0" if text == "-0" else text
@@ -82,11 +130,12 @@ def _circle_style(circle: Circle) -> dict[str, str]:
 
 
 def _text_style(text: Text) -> dict[str, str]:
-    import graphviz
-
-    # DOT labels read character entities, so an ampersand of the user's must be written as one
-    label = graphviz.escape(text.text.replace("&", "&amp;"))
-    style = {"shape": "plain", "style": "solid", "label": label, "fontsize": _number(text.size)}
+    style = {
+        "shape": "plain",
+        "style": "solid",
+        "label": _plain_label(text.text),
+        "fontsize": _number(text.size),
+    }
     if text.bold:
         style["fontname"] = "Helvetica-Bold"
     elif text.slant:
