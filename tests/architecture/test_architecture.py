@@ -205,6 +205,8 @@ def test_the_library_is_silent_and_never_exits(module):
     }  # fmt: skip
     if module == "child":  # the child process ends so, past the clean-up of the engine it ran
         barred -= {"os._exit"}
+    if module == "search.catalogue_build":  # a command of its own that tells how far it is
+        barred -= {"print"}
     assert not barred & set(calls(module))
     raised = [
         ast.unparse(node.exc)
