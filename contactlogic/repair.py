@@ -119,7 +119,7 @@ def cheapest_repair(
         expansion: the sequence they are meant for.  Without one the largest trap is kept.
     """
     if len(job.columns) > MOST_COLUMNS:
-        return NoRepair(f"no repair is looked for above {MOST_COLUMNS} relays and inputs")
+        return NoRepair(f"none is looked for above {MOST_COLUMNS} relays and inputs")
     case = _Case(job, recovery, expansion, watch or Watch())
     if isinstance(case.columns, str):
         return NoRepair(case.columns)

@@ -12,7 +12,7 @@ from contactlogic.sequence.transit import Transit
 
 __all__ = ["recovery_text", "repair_lines", "transit_line", "verdict_line"]
 
-_STATES = 24  # most states of one run that are printed
+_WIDTH = 360  # characters of one run that are printed, about
 _TRAPS = 12  # most traps that are printed
 _RACES = 8
 
@@ -75,9 +75,10 @@ def _text(recovery: Recovery, state: int) -> str:
 
 
 def _run(recovery: Recovery, states: Sequence[int]) -> str:
-    if len(states) <= _STATES:
+    most = max(4, _WIDTH // (len(recovery.columns) + 1))
+    if len(states) <= most:
         return " ".join(_text(recovery, state) for state in states)
-    shown = " ".join(_text(recovery, state) for state in states[: _STATES - 1])
+    shown = " ".join(_text(recovery, state) for state in states[: most - 1])
     return f"{shown} ... {_text(recovery, states[-1])} ({len(states)} states)"
 
 

@@ -6,7 +6,7 @@ from collections.abc import Sequence
 from dataclasses import replace
 
 from contactlogic.errors import DesignFileError, Place
-from contactlogic.naming import did_you_mean, listed
+from contactlogic.naming import did_you_mean
 from contactlogic.network import Network
 
 __all__ = ["fitted"]
@@ -54,7 +54,7 @@ def fitted(
             raise DesignFileError(
                 f"the design feeds no coil of {name}",
                 place=place,
-                expected=f"{name} among the loads, its coil; there are {listed(network.loads)}",
+                expected=f"{name} among the loads, for its coil",
             )
     order = {name: i for i, name in enumerate(columns)}
     poles = sorted(network.poles, key=lambda pole: (order[pole.relay], pole.number))

@@ -91,7 +91,7 @@ def test_large_sets_of_drives_are_left_alone() -> None:
     names = [f"K{i}" for i in range(repair.MOST_COLUMNS + 1)]
     job = job_of({name: name for name in names})
     found = repair.cheapest_repair(job, proved(job)[0])
-    assert found == repair.NoRepair("no repair is looked for above 10 relays and inputs")
+    assert found == repair.NoRepair("none is looked for above 10 relays and inputs")
 
 
 def expression(table, names):
