@@ -56,6 +56,7 @@ class _Judged:
     design: Design | None = None
     transits: tuple[Transit, ...] | None = None
     repair: Repair | NoRepair | None = None
+    stopped: bool = False
 
 
 def run(request: Request) -> Outcome:
@@ -87,15 +88,20 @@ def run(request: Request) -> Outcome:
     if request.form is not None and request.design is None:
         raise JobFileError("--form chooses among the designs of a file", hint="give --design")
     expansion = None if table is None else resolve(table)
+    judged: list[_Judged] = []
+    cut = False
     with watching(not request.quiet) as watch:
         try:
             if request.design is not None:
-                judged = list(_designs(request, request.design, job, timing, expansion, watch))
+                for one in _designs(request, request.design, job, timing, expansion, watch):
+                    judged.append(one)
             else:
                 assert isinstance(job, DrivesJob)
-                judged = [_drives(request, job, expansion, watch)]
+                judged.append(_drives(request, job, expansion, watch))
         except Stopped:
-            raise KeyboardInterrupt from None  # before anything was known
+            if not judged:
+                raise KeyboardInterrupt from None  # before anything was known
+            cut = True
     if request.json:
         worst = min(judged, key=lambda one: one.recovery.verdict == "recovers")
         sys.stdout.write(json.dumps(_contract(worst), indent=1) + "\n")
@@ -103,7 +109,7 @@ def run(request: Request) -> Outcome:
         sys.stdout.write("\n".join(_text(one, expansion) for one in judged))
     return Outcome(
         all(one.recovery.verdict == "recovers" for one in judged),
-        not all(one.recovery.complete for one in judged),
+        cut or any(one.stopped for one in judged),
     )
 
 
@@ -122,6 +128,7 @@ def _drives(request: Request, job: DrivesJob, expansion: Expansion | None, watch
     from contactlogic.repair import cheapest_repair
     from contactlogic.sequence.drives import formula_drive
     from contactlogic.sequence.prove import prove_drives
+    from contactlogic.sequence.space import Stopped
 
     recovery = prove_drives(
         job.columns,
@@ -133,10 +140,13 @@ def _drives(request: Request, job: DrivesJob, expansion: Expansion | None, watch
         memory=request.memory,
         watch=watch,
     )
-    repair = None
+    repair, stopped = None, not recovery.complete
     if recovery.complete and recovery.verdict != "recovers":
-        repair = cheapest_repair(job, recovery, expansion, watch=watch)
-    return _Judged(recovery, repair=repair)
+        try:
+            repair = cheapest_repair(job, recovery, expansion, watch=watch)
+        except Stopped:
+            stopped = True
+    return _Judged(recovery, repair=repair, stopped=stopped)
 
 
 def _designs(
@@ -151,6 +161,7 @@ def _designs(
     from contactlogic.report.designfile import read_design
     from contactlogic.sequence.fitting import fitted
     from contactlogic.sequence.prove import network_motion, prove_network
+    from contactlogic.sequence.space import Stopped
     from contactlogic.sequence.transit import transits
 
     file = read_design(path)
@@ -171,12 +182,19 @@ def _designs(
             memory=request.memory,
             watch=watch,
         )
-        found = None
+        found, stopped = None, not recovery.complete
         if recovery.complete and len(columns) <= _MOST_IN_TRANSIT:
-            motion = network_motion(network, timing, expansion, memory=request.memory)
             states = [] if expansion is None else [step.state for step in expansion.steps]
-            found = transits(network, motion, states)
-        yield _Judged(recovery, design, found)
+            try:
+                motion = network_motion(
+                    network, timing, expansion, memory=request.memory, watch=watch
+                )
+                found = transits(network, motion, states)
+            except Stopped:
+                stopped = True
+        yield _Judged(recovery, design, found, stopped=stopped)
+        if stopped:
+            return
 
 
 def _chosen(file: DesignFile, form: str | None, place: Place) -> Sequence[Design]:

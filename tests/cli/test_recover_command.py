@@ -19,6 +19,7 @@ from contactlogic.design import Result as Wiring
 from contactlogic.job.model import Job, Load
 from contactlogic.network import Network, Pole
 from contactlogic.report.designfile import dumps
+from contactlogic.sequence.space import Stopped
 from contactlogic.truth import Target
 
 SLOW = '[timing]\nslow_release = "A B C D"\n'
@@ -236,6 +237,16 @@ def test_ctrl_c_gives_what_is_known() -> None:
         "contactlogic: stopped\n" in done.stderr
     )
     assert signal.getsignal(signal.SIGINT) is before
+
+
+def test_ctrl_c_while_a_repair_is_looked_for(monkeypatch: pytest.MonkeyPatch) -> None:
+    def stopped(*_: object, **__: object) -> None:
+        raise Stopped
+
+    monkeypatch.setattr(repair, "cheapest_repair", stopped)
+    done = recover(LATCH)
+    assert done.exit_code == 130
+    assert done.stdout.startswith("sticks: 2 traps, where one would do\n")
 
 
 @pytest.mark.parametrize(
