@@ -17,11 +17,16 @@ from contactlogic.child import ChildCrashed, ChildTimedOut, run
 from contactlogic.design import Bound, Design, Form, LoadStatus, Result
 from contactlogic.errors import LimitError, Place, ProofFailed
 from contactlogic.job.model import Job
+from contactlogic.ladder.build import build
+from contactlogic.ladder.candidates import candidate_trees
+from contactlogic.ladder.plan import plan_rungs
 from contactlogic.ladder.synthesise import LadderTask, best_ladder, plain_ladder
 from contactlogic.minimize import Cover, covers
 from contactlogic.naming import free_name
 from contactlogic.network import Network, Pole
 from contactlogic.search.best import Best, Task, best_networks
+from contactlogic.search.catalogue import Entry, least_bridge, least_contacts, least_ladder
+from contactlogic.search.mesh import to_network
 from contactlogic.search.portfolio import Progress
 from contactlogic.truth import Target
 
@@ -33,9 +38,10 @@ EFFORT = 40
 """Windows for each walker where neither effort nor seconds are given."""
 
 _CEILING = 600.0  # seconds for covers and ladder where only an effort is given
-_CONFLICTS = 250  # of the proof, for each window of effort
+_CONFLICTS = 2000  # of the proof, for each window of effort
 _COVER_SHARE = 0.3  # of the time goes to covers at most, shared out evenly over the loads
 _LADDER_SHARE = 0.4
+_TREES = 40  # of fewest contacts, looked at beside the catalogue's ladder
 _FEW_RELAYS = 5  # up to here a ladder takes a second or so
 
 
@@ -68,7 +74,8 @@ def wire(
     is marked `interrupted`.
 
     Raises:
-        LimitError: a pole budget that no network found keeps.
+        LimitError: a pole budget that no network found keeps (a form that alone cannot keep it is
+            left out, with a note).
         ProofFailed: contactlogic built a network that fails its own proof.
     """
     return synthesise(job, Search(form, seconds, effort, seed, workers, repeaters, watch))
@@ -109,6 +116,13 @@ def synthesise(
     deadline = monotonic() + (_CEILING if seconds is None else seconds)
     forms: list[Form] = ["ladder", "bridge"] if search.form == "both" else [search.form]
     found = _covers(job, deadline, seed)
+    statuses = tuple(_status(job, name, least[0]) for name, least in found.items())
+    if penalty is None and (shelf := _from_catalogue(job, forms)) is not None:
+        designs = (
+            _proved(job, form, _taken(form, entry, job), {}, entry.at_least, statuses)
+            for form, entry in shelf.items()
+        )
+        return Result(job, tuple(designs), job.relays)
     at_home = job
     if home is not None:
         loads = tuple(replace(load, target=home[load.name]) for load in job.loads)
@@ -129,20 +143,59 @@ def synthesise(
         home=home,
         watch=None if watch is None else lambda progress: watch(forms, progress),
     )
-    if not search.repeaters and any(best.over.values()):
+    missing = [] if search.repeaters else [form for form in forms if best.over[form]]
+    if len(missing) == len(forms):
         raise _over_budget(job, best)
-    statuses = tuple(_status(job, name, least[0]) for name, least in found.items())
+    forms = [form for form in forms if form not in missing]
+    notes = tuple(f"no {form} found keeps the pole budgets" for form in missing)
     if search.repeaters:
         networks, added = _with_repeaters(job, best.networks)
     else:
         networks, added = dict(best.networks), {}
     return Result(
         job,
-        tuple(_proved(job, name, networks[name], added, best, statuses) for name in forms),
+        tuple(
+            _proved(job, form, networks[form], added, best.at_least, statuses, notes)
+            for form in forms
+        ),
         (*job.relays, *added),
         added,
         interrupted=best.progress.interrupted,
     )
+
+
+def _from_catalogue(job: Job, forms: Sequence[Form]) -> dict[Form, Entry] | None:
+    """Entries for a job of one load that the catalogue answers, None for any other job."""
+    if len(job.loads) != 1 or job.limits.poles or job.limits.contacts:
+        return None
+    target = job.loads[0].target
+    found: dict[Form, Entry] = {}
+    for form in forms:
+        if form == "bridge":
+            by_contacts = job.limits.objective == "contacts"
+            entry = least_contacts(target) if by_contacts else least_bridge(target)
+        elif job.limits.objective == "poles":
+            entry = least_ladder(target)
+        else:
+            return None
+        if entry is None:
+            return None
+        found[form] = entry
+    return found
+
+
+def _taken(form: Form, entry: Entry, job: Job) -> Network:
+    """The catalogue's network; of ladders one of fewest contacts where that has as few poles."""
+    name = job.loads[0].name
+    network = to_network(entry.mesh, job.relays, [name])
+    if form == "bridge":
+        return network
+    plain = (
+        build(plan_rungs([tree], share=False), job.relays, [name])
+        for tree in candidate_trees(job.loads[0].target, (), _TREES)
+    )
+    fewest = min(plain, key=Network.cost)
+    return fewest if len(fewest.poles) <= len(network.poles) else network
 
 
 def _covers(job: Job, deadline: float, seed: int) -> dict[str, tuple[Cover, ...]]:
@@ -200,10 +253,11 @@ def _proved(
     form: Form,
     network: Network,
     repeaters: Mapping[str, str],
-    best: Best,
+    at_least: int,
     statuses: tuple[LoadStatus, ...],
+    said: tuple[str, ...] = (),
 ) -> Design:
-    """The design of a network that passes its proof."""
+    """The design of a network that passes its proof; `at_least` is what the objective counts."""
     budgets = dict(job.limits.poles)
     for name, relay in repeaters.items():
         budgets[name] = budgets[relay]
@@ -220,16 +274,14 @@ def _proved(
         raise ProofFailed(proof.explain())
     poles = len(network.poles)
     contacts = sum(count.contacts for count in network.per_relay().values())
-    notes = []
+    notes = list(said)
     if job.limits.objective == "contacts":
-        at_least = _relays_that_matter(job)
-        proved = contacts == best.at_least
+        proved = contacts == at_least
         notes.append(
             f"{contacts} contacts, "
-            + ("the least there are: proved" if proved else f"at least {best.at_least} are needed")
+            + ("the least there are: proved" if proved else f"at least {at_least} are needed")
         )
-    else:
-        at_least = best.at_least
+        at_least = _relays_that_matter(job)
     notes += [
         f"{name} is a repeater of {relay}: its coil in parallel with {relay}'s"
         for name, relay in repeaters.items()

@@ -1,0 +1,161 @@
+"""From a sequence of relay states to self-starting wiring, proved from its contacts.
+
+The expanded list gives the wanted drive of every coil and the wanted loads; coils and loads
+together are one network over all relay states.  The search starts from wiring that comes home from
+every state (`sequence.selfstart`) and keeps to networks that recover; what it ends with is proved
+twice more, row by row by `check` and by exhausting the state space of its contacts.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from contactlogic.design import Result
+from contactlogic.errors import LimitError, Place, TableError
+from contactlogic.job.model import Job, Load, LoadFacts, LoadKind, PatternJob, SequenceJob
+from contactlogic.job.sequence import SequenceTable, state_text
+from contactlogic.network import folded
+from contactlogic.sequence.memory import resolve
+from contactlogic.sequence.pattern import choose_relays
+from contactlogic.sequence.prove import network_motion, prove_network
+from contactlogic.sequence.recovery import Recovery
+from contactlogic.sequence.selfstart import Recovers, homing
+from contactlogic.sequence.steps import Expansion
+from contactlogic.sequence.transit import Transit, transits
+from contactlogic.sequence.wants import drive_targets, load_targets
+from contactlogic.synthesis import Search, synthesise
+from contactlogic.truth import Target
+
+__all__ = ["MOST_RELAYS", "SequencerResult", "as_table_job", "table_job", "wire_sequence"]
+
+MOST_RELAYS = 10
+"""Most relays and inputs of a sequence that is wired; recovery is proved of far more."""
+
+
+@dataclass(frozen=True)
+class SequencerResult(Result):
+    """A result with what was proved of it as a sequencer.
+
+    Args:
+        expansion: the one-relay steps.
+        recoveries: of each design, in the order of `designs`.
+        transits: gaps and flashes at coils while a relay moves, of each design.
+        notes: what was chosen or added: relays of a pattern, step orders, memory relays.
+    """
+
+    expansion: Expansion | None = None
+    recoveries: tuple[Recovery, ...] = ()
+    transits: tuple[tuple[Transit, ...], ...] = ()
+    notes: tuple[str, ...] = ()
+
+
+def table_job(job: SequenceJob, expansion: Expansion) -> Job:
+    """The sequence as a table job: coils and loads over all states of the relays.
+
+    Args:
+        job: the sequence.
+        expansion: its steps, unambiguous.
+    """
+
+    def load(name: str, target: Target, kind: LoadKind | None = None) -> Load:
+        facts = job.facts.get(name, LoadFacts(kind))
+        return Load(name, target, facts.kind or kind, facts.amps)
+
+    coils = [load(name, target, "coil") for name, target in drive_targets(expansion).items()]
+    loads = [load(name, target) for name, target in load_targets(expansion).items()]
+    timing = job.table.timing
+    listed = 0
+    for step in expansion.steps:
+        listed |= 1 << step.state
+    return Job(
+        job.title,
+        expansion.columns,
+        (*coils, *loads),
+        listed,
+        job.supply,
+        job.limits,
+        job.file,
+        frozenset(n for n in expansion.relays if n in timing.slow_release + timing.slow_operate),
+    )
+
+
+def as_table_job(job: SequenceJob | PatternJob) -> Job:
+    """What a sequence or pattern wants of its wiring, row by row."""
+    listed, _ = _listed(job)
+    return table_job(listed, resolve(listed.table))
+
+
+def _listed(job: SequenceJob | PatternJob) -> tuple[SequenceJob, tuple[str, ...]]:
+    """The sequence of a pattern, with what was chosen; a sequence as it is."""
+    if isinstance(job, SequenceJob):
+        return job, ()
+    choice = choose_relays(job.pattern)
+    made = SequenceJob(job.title, choice.table, job.supply, job.facts, job.limits, job.file)
+    return made, choice.notes
+
+
+def wire_sequence(job: SequenceJob | PatternJob, search: Search) -> SequencerResult:
+    """Wire a sequence so that it starts itself, and prove that it does.
+
+    Args:
+        job: the sequence, or a pattern for which the relays are chosen first.
+        search: how to search.
+
+    Raises:
+        TableError: the sequence is ambiguous, or no wiring found starts itself.
+        LimitError: more relays than can be searched.
+        ProofFailed: contactlogic built a network that fails its own proof.
+    """
+    job, notes = _listed(job)
+    table = job.table
+    expansion = resolve(table)
+    if len(expansion.columns) > MOST_RELAYS:
+        raise LimitError(
+            f"the sequence has {len(expansion.columns)} relays and inputs",
+            place=Place(table.file, "sequence"),
+            expected=f"at most {MOST_RELAYS} for wiring",
+            hint="contactlogic recover proves the recovery of larger sequencers",
+        )
+    asked = table_job(job, expansion)
+    drives = {name: asked.targets[name] for name in expansion.relays}
+    home = asked.targets | homing(expansion, drives)
+    penalty = Recovers(table.timing, expansion, table.inputs_return)
+    result = synthesise(asked, search, home=home, penalty=penalty)
+    recoveries, gaps = [], []
+    states = tuple(step.state for step in expansion.steps)
+    for design in result.designs:
+        network = folded(design.network, result.repeaters)
+        found = prove_network(network, table.timing, expansion, inputs_return=table.inputs_return)
+        if found.verdict != "recovers":
+            raise _not_self_starting(table, found, len(expansion.columns))
+        recoveries.append(found)
+        motion = network_motion(network, table.timing, expansion)
+        gaps.append(tuple(transits(network, motion, states)))
+    return SequencerResult(
+        result.job,
+        result.designs,
+        result.relays,
+        result.repeaters,
+        result.interrupted,
+        expansion,
+        tuple(recoveries),
+        tuple(gaps),
+        notes + expansion.notes,
+    )
+
+
+def _not_self_starting(table: SequenceTable, found: Recovery, n: int) -> TableError:
+    """Why no wiring found starts itself, with the smallest trap."""
+    stray = [trap for trap in found.traps if not trap.wanted]
+    if found.verdict == "hunts" and found.hunting:
+        what = f"it can hunt for ever from {state_text(found.hunting[0], n)}"
+    elif stray:
+        trap = min(stray, key=lambda t: t.states)
+        what = f"it can stick in {trap.states} other states, such as {state_text(trap.example, n)}"
+    else:
+        what = "the wanted states have another way out"
+    return TableError(
+        f"no wiring found lets this sequence start itself: {what}",
+        place=Place(table.file, "sequence"),
+        hint="list what shall happen in those states, add a relay, or let inputs return",
+    )
