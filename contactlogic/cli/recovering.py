@@ -118,9 +118,9 @@ def _table(job: DrivesJob | PatternJob | SequenceJob) -> tuple[SequenceTable | N
         return job.table, job.timing
     if isinstance(job, SequenceJob):
         return job.table, job.table.timing
-    from contactlogic.sequence.pattern import choose_relays
+    from contactlogic.sequence.pattern import sequence_of
 
-    table = choose_relays(job.pattern).table
+    table = sequence_of(job)[0].table
     return table, table.timing
 
 

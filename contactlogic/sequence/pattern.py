@@ -16,10 +16,12 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 
-from contactlogic.errors import Place, TableError
+from contactlogic.errors import JobFileError, Place, TableError
+from contactlogic.job.model import PatternJob, SequenceJob
 from contactlogic.job.sequence import Pattern, Row, SequenceTable, Timing, state_text
+from contactlogic.naming import did_you_mean, listed
 
-__all__ = ["PatternChoice", "choose_relays", "cyclic_code"]
+__all__ = ["PatternChoice", "choose_relays", "cyclic_code", "sequence_of"]
 
 Loads = tuple[int | None, ...]
 
@@ -36,6 +38,25 @@ class PatternChoice:
     table: SequenceTable
     first_rows: tuple[int, ...]
     notes: tuple[str, ...]
+
+
+def sequence_of(job: PatternJob) -> tuple[SequenceJob, PatternChoice]:
+    """The sequence job that a pattern job comes to, and how its relays were chosen.
+
+    Raises:
+        JobFileError: limits of relays that were not chosen.
+    """
+    choice = choose_relays(job.pattern)
+    for name in (*job.limits.poles, *job.limits.contacts):
+        if name not in choice.table.columns:
+            raise JobFileError(
+                f"there is no relay {name} among those chosen for the pattern",
+                place=Place(job.file, "limits"),
+                expected=listed(choice.table.columns),
+                hint=did_you_mean(name, choice.table.columns),
+            )
+    made = SequenceJob(job.title, choice.table, job.supply, job.facts, job.limits, job.file)
+    return made, choice
 
 
 def choose_relays(pattern: Pattern) -> PatternChoice:

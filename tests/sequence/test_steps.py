@@ -3,13 +3,15 @@
 from __future__ import annotations
 
 import random
+from dataclasses import replace
 
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 from sequence.stepping import Sequencer, from_targets
 
-from contactlogic.errors import TableError
+from contactlogic.errors import JobFileError, TableError
+from contactlogic.job.model import Limits, LoadFacts, PatternJob, SequenceJob, Supply
 from contactlogic.job.sequence import (
     Branch,
     Pattern,
@@ -19,7 +21,7 @@ from contactlogic.job.sequence import (
     state_text,
 )
 from contactlogic.sequence.memory import resolve
-from contactlogic.sequence.pattern import choose_relays, cyclic_code
+from contactlogic.sequence.pattern import choose_relays, cyclic_code, sequence_of
 from contactlogic.sequence.steps import ambiguities, expand
 from contactlogic.sequence.wants import (
     drive_targets,
@@ -257,3 +259,17 @@ def test_patterns_run_through_their_steps(stepping, count):
 def test_a_pattern_of_one_step_is_refused():
     with pytest.raises(TableError, match="at least two steps"):
         choose_relays(Pattern(("X",), ((1,),), "slow"))
+
+
+def test_a_pattern_job_keeps_what_it_states():
+    pattern = Pattern(("RED", "GREEN"), ((1, 0), (0, 1), (1, 1)), "ring")
+    supply, limits = Supply("+24 V"), Limits(poles={"A": 2})
+    job = PatternJob("Lights", pattern, supply, {"RED": LoadFacts("lamp")}, limits, "lights.toml")
+    made, choice = sequence_of(job)
+    assert made == SequenceJob("Lights", choice.table, supply, job.facts, limits, "lights.toml")
+    with pytest.raises(JobFileError) as caught:
+        sequence_of(replace(job, limits=Limits(poles={"K9": 2})))
+    assert str(caught.value) == (
+        "lights.toml, [limits]: there is no relay K9 among those chosen for the pattern\n"
+        "  expected: one of A, B, C"
+    )
