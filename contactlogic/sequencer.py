@@ -8,12 +8,12 @@ twice more, row by row by `check` and by exhausting the state space of its conta
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 
 from contactlogic.design import Result
 from contactlogic.errors import LimitError, Place, TableError
 from contactlogic.job.model import Job, Load, LoadFacts, LoadKind, PatternJob, SequenceJob
-from contactlogic.job.sequence import SequenceTable, state_text
+from contactlogic.job.sequence import SequenceTable, Timing, state_text
 from contactlogic.network import folded
 from contactlogic.sequence.memory import resolve
 from contactlogic.sequence.pattern import choose_relays
@@ -38,12 +38,14 @@ class SequencerResult(Result):
 
     Args:
         expansion: the one-relay steps.
+        timing: which relays are slow.
         recoveries: of each design, in the order of `designs`.
         transits: gaps and flashes at coils while a relay moves, of each design.
         notes: what was chosen or added: relays of a pattern, step orders, memory relays.
     """
 
-    expansion: Expansion | None = None
+    expansion: Expansion = field(kw_only=True)
+    timing: Timing = field(kw_only=True)
     recoveries: tuple[Recovery, ...] = ()
     transits: tuple[tuple[Transit, ...], ...] = ()
     notes: tuple[str, ...] = ()
@@ -137,10 +139,11 @@ def wire_sequence(job: SequenceJob | PatternJob, search: Search) -> SequencerRes
         result.relays,
         result.repeaters,
         result.interrupted,
-        expansion,
         tuple(recoveries),
         tuple(gaps),
         notes + expansion.notes,
+        expansion=expansion,
+        timing=table.timing,
     )
 
 

@@ -151,7 +151,7 @@ def wire(
     )
     with guarded(keep=str(job), trace=verbose):
         if seconds is not None and effort is not None:
-            raise JobFileError("--seconds and --effort exclude each other", hint="give one")
+            raise JobFileError("--seconds and --effort exclude each other", hint="give one of them")
         result = wiring.run(request)
         if result.interrupted:
             raise typer.Exit(Status.STOPPED)

@@ -5,6 +5,7 @@ from __future__ import annotations
 from pathlib import Path
 
 from contactlogic.errors import DesignFileError, Place
+from contactlogic.job.model import Job
 
 __all__ = ["run"]
 
@@ -18,10 +19,14 @@ def run(design: Path, job: Path, *, loads: str | None, unlisted: str | None) -> 
         InputError: the job or the design file cannot be used.
     """
     from contactlogic.check import verify
-    from contactlogic.cli.jobs import read_job
+    from contactlogic.cli.jobs import wirable_job
     from contactlogic.report.designfile import read_design
 
-    wanted = read_job(job, loads, unlisted)
+    wanted = wirable_job(job, loads, unlisted)
+    if not isinstance(wanted, Job):  # of a sequence: its coils and loads, row by row
+        from contactlogic.sequencer import as_table_job
+
+        wanted = as_table_job(wanted)
     file = read_design(design)
     if not file.designs:
         raise DesignFileError("the file holds no design", place=Place(file=str(design)))

@@ -5,18 +5,23 @@ from __future__ import annotations
 import shutil
 import sys
 from collections.abc import Iterable
-from dataclasses import dataclass, replace
+from dataclasses import dataclass, field, replace
 from pathlib import Path
+from time import monotonic
 from typing import TYPE_CHECKING
 
-from contactlogic.cli.jobs import read_job
+from contactlogic.cli.jobs import Wirable, wirable_job
 from contactlogic.design import Result
-from contactlogic.job.model import Job
+from contactlogic.job.model import Job, PatternJob
 
 if TYPE_CHECKING:
-    from contactlogic.synthesis import Forms
+    from contactlogic.synthesis import Forms, Search
 
-__all__ = ["Request", "run"]
+__all__ = ["Request", "run", "searching"]
+
+_STOPPED = "stopped early: this is the best found so far"
+
+_STARTING = 0.2  # seconds from the user's return key until a request is there
 
 
 @dataclass(frozen=True)
@@ -38,6 +43,7 @@ class Request:
     repeaters: bool = False
     loads: str | None = None
     unlisted: str | None = None
+    began: float = field(default_factory=monotonic)
 
 
 def run(request: Request) -> Result:
@@ -49,29 +55,31 @@ def run(request: Request) -> Result:
     """
     from contactlogic.cli.progress import live
     from contactlogic.report.folder import check_folder, write_folder
-    from contactlogic.synthesis import wire
+    from contactlogic.synthesis import Search
 
-    job = _limited(read_job(request.job, request.loads, request.unlisted), request)
+    job = _limited(wirable_job(request.job, request.loads, request.unlisted), request)
     folder = request.out or Path(request.job.stem)
     if not request.json:
         check_folder(folder, force=request.force)  # before the search, which takes time
     with live(not request.quiet) as watch:
-        result = wire(
-            job,
-            form=request.form,
-            seconds=request.seconds,
-            effort=request.effort,
-            seed=request.seed,
-            workers=request.workers,
-            repeaters=request.repeaters,
-            watch=watch,
+        search = Search(
+            request.form,
+            searching(request, monotonic()),
+            request.effort,
+            request.seed,
+            request.workers,
+            request.repeaters,
+            watch,
         )
+        result = _wired(job, search)
     if request.json:
         from contactlogic.report.designfile import dumps
 
         if request.out and not request.quiet:
             print("contactlogic: --json writes no files, so --out is not used", file=sys.stderr)
         sys.stdout.write(dumps(result))
+        if result.interrupted and not request.quiet:
+            print(f"contactlogic: {_STOPPED}", file=sys.stderr)
         return result
 
     from contactlogic.report.facts import facts
@@ -88,16 +96,41 @@ def run(request: Request) -> Result:
     for note in made.notes:
         print(f"note: {note}")
     if result.interrupted:
-        print("stopped early: this is the best found so far")
+        print(_STOPPED)
     print(f"written to {folder}: {', '.join(_tidy(made.files))}")
     return result
 
 
-def _limited(job: Job, request: Request) -> Job:
+def searching(request: Request, now: float) -> float | None:
+    """Seconds left for the search at `now`, so that the whole command keeps to `--seconds`.
+
+    Kept back is the time that drawing takes: a second or so for each form of a usual job, and more
+    where a long search will leave much to draw.
+    """
+    if request.seconds is None:
+        return None
+    forms = 2 if request.form == "both" else 1
+    drawing = 0.0 if request.json else forms * (0.3 + 0.02 * request.seconds)
+    left = request.seconds - _STARTING - (now - request.began) - drawing
+    return max(0.1 * request.seconds, left)
+
+
+def _wired(job: Wirable, search: Search) -> Result:
+    if isinstance(job, Job):
+        from contactlogic.synthesis import synthesise
+
+        return synthesise(job, search)
+    from contactlogic.sequencer import wire_sequence
+
+    return wire_sequence(job, search)
+
+
+def _limited(job: Wirable, request: Request) -> Wirable:
     """The job with the budget of `--poles-per-relay` for every relay that has none of its own."""
-    if request.poles_per_relay is None:
+    if request.poles_per_relay is None or isinstance(job, PatternJob):
         return job
-    free = (name for name in job.relays if name not in job.limits.contacts)
+    relays = job.relays if isinstance(job, Job) else job.table.columns
+    free = (name for name in relays if name not in job.limits.contacts)
     poles = dict.fromkeys(free, request.poles_per_relay) | dict(job.limits.poles)
     return replace(job, limits=replace(job.limits, poles=poles))
 

@@ -21,7 +21,8 @@ __all__ = ["FORMS", "check_folder", "write_folder"]
 
 FORMS = ("ladder", "bridge")
 _TOP = ("design.json", "report.md")
-_PER_FORM = ("drawing.svg", "drawing.png", "drawing.gv", "wiring.csv", "schedule.csv")
+_DRAWN = tuple(f"{name}.{kind}" for name in ("drawing", "states") for kind in ("svg", "png", "gv"))
+_PER_FORM = (*_DRAWN, "chart.svg", "chart.png", "wiring.csv", "schedule.csv", "recovery.json")
 _OURS = frozenset((*_TOP, *(f"{form}/{name}" for form in FORMS for name in _PER_FORM)))
 _SCHEMA = "contactlogic/design/"
 

@@ -26,8 +26,10 @@ from contactlogic.report.phrases import (
     run_line,
     saving,
 )
+from contactlogic.report.sequencer import expansion_lines, report_section
 from contactlogic.report.text import code, markdown
 from contactlogic.report.wiring import conductors, design_name
+from contactlogic.sequencer import SequencerResult
 from contactlogic.truth import settings
 
 __all__ = ["report"]
@@ -55,8 +57,13 @@ def report(result: Result, facts: Sequence[Facts]) -> str:
             "",
         ]
     lines += _asked(job)
-    for design, known in zip(result.designs, facts, strict=True):
+    sequencer = result if isinstance(result, SequencerResult) else None
+    if sequencer is not None:
+        steps = [*expansion_lines(sequencer), *(f"note: {note}" for note in sequencer.notes)]
+        lines += ["## Expanded list", "", "```text", *steps, "```", ""]
+    for index, (design, known) in enumerate(zip(result.designs, facts, strict=True)):
         lines += _design(design, result, known)
+        lines += [] if sequencer is None else report_section(sequencer, index)
     lines += ["## Cautions", "", *(f"- {caution}" for caution in CAUTIONS)]
     return "\n".join(lines) + "\n"
 

@@ -10,6 +10,7 @@ from contactlogic.errors import RenderError
 from contactlogic.report.facts import Facts
 from contactlogic.report.markdown import report
 from contactlogic.report.wiring import schedule_csv, wiring_csv
+from contactlogic.sequencer import SequencerResult
 
 __all__ = ["Papers", "papers"]
 
@@ -36,7 +37,7 @@ def papers(result: Result, facts: Sequence[Facts]) -> Papers:
         "report.md": report(result, facts).encode(),
     }
     notes = []
-    for design in result.designs:
+    for index, design in enumerate(result.designs):
         form = design.form
         draw = draw_ladder if form == "ladder" else draw_bridge
         text = draw(
@@ -55,4 +56,10 @@ def papers(result: Result, facts: Sequence[Facts]) -> Papers:
             files |= {f"{form}/drawing.{kind}": data for kind, data in pictures.items()}
         files[f"{form}/wiring.csv"] = wiring_csv(design, result.job).encode()
         files[f"{form}/schedule.csv"] = schedule_csv(design, result.job).encode()
+        if isinstance(result, SequencerResult):
+            from contactlogic.report.sequencer import sequence_files
+
+            more, said = sequence_files(result, index)
+            files |= more
+            notes += said
     return Papers(files, tuple(notes))

@@ -24,8 +24,10 @@ from contactlogic.report.phrases import (
     run_line,
     saving,
 )
+from contactlogic.report.sequencer import expansion_lines, recovery_lines
 from contactlogic.report.text import one_line
 from contactlogic.report.wiring import design_name
+from contactlogic.sequencer import SequencerResult
 
 __all__ = ["summary"]
 
@@ -43,8 +45,12 @@ def summary(
         verbose: also say what the job states and how each load's cover was found.
     """
     parts = [_at_rest(result, facts)] if result.designs else []
-    for design, known in zip(result.designs, facts, strict=True):
-        parts.append(_design(design, result.job, known, width, verbose))
+    sequencer = result if isinstance(result, SequencerResult) else None
+    if sequencer is not None:
+        parts.append([*expansion_lines(sequencer), *(f"note: {n}" for n in sequencer.notes)])
+    for index, (design, known) in enumerate(zip(result.designs, facts, strict=True)):
+        more = [] if sequencer is None else list(recovery_lines(sequencer, index))
+        parts.append([*_design(design, result.job, known, width, verbose), *more])
     if len(result.designs) > 1:
         parts.append(_side_by_side(result, width))
     lines = [line for part in parts for line in (*part, "")][:-1]
