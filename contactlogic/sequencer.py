@@ -8,9 +8,9 @@ twice more, row by row by `check` and by exhausting the state space of its conta
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 
-from contactlogic.design import Result
+from contactlogic.design import Design, Result
 from contactlogic.errors import LimitError, Place, TableError
 from contactlogic.job.model import Job, Load, LoadFacts, LoadKind, PatternJob, SequenceJob
 from contactlogic.job.sequence import SequenceTable, Timing, state_text
@@ -19,7 +19,7 @@ from contactlogic.sequence.memory import resolve
 from contactlogic.sequence.pattern import choose_relays
 from contactlogic.sequence.prove import network_motion, prove_network
 from contactlogic.sequence.recovery import Recovery
-from contactlogic.sequence.selfstart import Recovers, homing
+from contactlogic.sequence.selfstart import Blemishes, Recovers, homing, shared_coils
 from contactlogic.sequence.steps import Expansion
 from contactlogic.sequence.transit import Transit, transits
 from contactlogic.sequence.wants import drive_targets, load_targets
@@ -122,7 +122,8 @@ def wire_sequence(job: SequenceJob | PatternJob, search: Search) -> SequencerRes
     drives = {name: asked.targets[name] for name in expansion.relays}
     home = asked.targets | homing(expansion, drives)
     penalty = Recovers(table.timing, expansion, table.inputs_return)
-    result = synthesise(asked, search, home=home, penalty=penalty)
+    blemishes = Blemishes(table.timing, expansion)
+    result = synthesise(asked, search, home=home, penalty=penalty, blemishes=blemishes)
     recoveries, gaps = [], []
     states = tuple(step.state for step in expansion.steps)
     for design in result.designs:
@@ -133,9 +134,10 @@ def wire_sequence(job: SequenceJob | PatternJob, search: Search) -> SequencerRes
         recoveries.append(found)
         motion = network_motion(network, table.timing, expansion)
         gaps.append(tuple(transits(network, motion, states)))
+    designs = tuple(_with_notes(design, table.timing) for design in result.designs)
     return SequencerResult(
         result.job,
-        result.designs,
+        designs,
         result.relays,
         result.repeaters,
         result.interrupted,
@@ -145,6 +147,15 @@ def wire_sequence(job: SequenceJob | PatternJob, search: Search) -> SequencerRes
         expansion=expansion,
         timing=table.timing,
     )
+
+
+def _with_notes(design: Design, timing: Timing) -> Design:
+    """The design with a note for every stored coil that shares its net (section 3)."""
+    notes = tuple(
+        f"coil {name} shares its net with another load, which shortens its hold"
+        for name in shared_coils(design.network, timing)
+    )
+    return replace(design, notes=design.notes + notes)
 
 
 def _not_self_starting(table: SequenceTable, found: Recovery, n: int) -> TableError:

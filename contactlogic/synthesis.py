@@ -100,6 +100,7 @@ def synthesise(
     *,
     home: Mapping[str, Target] | None = None,
     penalty: Callable[[Network], int] | None = None,
+    blemishes: Callable[[Network], int] | None = None,
 ) -> Result:
     """`wire` with a judgement of its own.
 
@@ -109,6 +110,7 @@ def synthesise(
         home: narrower wants, load by load, whose plain wiring the penalty approves of; the search
             starts there.  None for the job's own.
         penalty: weighs before all cost, 0 where all is well; picklable.
+        blemishes: counts what is to be avoided among networks of equal poles; picklable.
     """
     seconds, effort, seed = search.seconds, search.effort, search.seed
     if seconds is None and effort is None:
@@ -131,7 +133,7 @@ def synthesise(
     ladder = _ladder(at_home, narrow, deadline, seed, timed=seconds is not None)
     watch = search.watch
     best = best_networks(
-        replace(_task(job, search.repeaters), penalty=penalty),
+        replace(_task(job, search.repeaters), penalty=penalty, blemishes=blemishes),
         {name: [ladder] for name in forms},
         forms,
         seconds=None if seconds is None else max(0.0, deadline - monotonic()),

@@ -28,7 +28,8 @@ class Task:
     """What to search for, by name: everything of a job that the search depends on.
 
     `budgets` are most poles of a relay; with `repeaters` a relay over its budget is given
-    repeaters of as many poles, as few as possible.  `penalty` as in `Goal`.
+    repeaters of as many poles, as few as possible.  `penalty` and
+    `blemishes` as in `Goal`.
     """
 
     relays: tuple[str, ...]
@@ -39,6 +40,7 @@ class Task:
     objective: Objective = "poles"
     repeaters: bool = False
     penalty: Callable[[Network], int] | None = None
+    blemishes: Callable[[Network], int] | None = None
 
 
 @dataclass(frozen=True)
@@ -151,6 +153,7 @@ def _goal(task: Task, *, ladder: bool) -> Goal:
         task.repeaters,
         task.objective == "contacts",
         task.penalty,
+        task.blemishes,
         (task.relays, tuple(task.targets)),
     )
 

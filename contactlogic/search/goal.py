@@ -31,7 +31,8 @@ class Goal:
         singly: count makes and breaks singly; the meshes then hold single contacts only.
         penalty: a further judgement that weighs before all cost, 0 where all is well; it gets the
             network under the names of `names` and must be picklable.
-        names: relays and loads, for `penalty`.
+        blemishes: counts what is to be avoided among networks of equal poles, likewise.
+        names: relays and loads, for `penalty` and `blemishes`.
     """
 
     n: int
@@ -43,6 +44,7 @@ class Goal:
     repeaters: bool = False
     singly: bool = False
     penalty: Callable[[Network], int] | None = None
+    blemishes: Callable[[Network], int] | None = None
     names: tuple[tuple[str, ...], tuple[str, ...]] = ((), ())
 
     def accepts(self, mesh: Mesh) -> bool:
@@ -100,7 +102,10 @@ class Goal:
 
     def cost(self, mesh: Mesh) -> tuple[int, ...]:
         """Excess first, then the order of section 4."""
-        return (self.excess(mesh), *cost(mesh))
+        poles, *ties = cost(mesh)
+        if self.blemishes is not None:
+            ties.insert(0, self.blemishes(to_network(mesh, *self.names)))
+        return (self.excess(mesh), poles, *ties)
 
     def reached(self, mesh: Mesh, enough: int) -> bool:
         """Whether a mesh keeps every budget with no more than `enough` poles."""

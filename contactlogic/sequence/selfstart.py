@@ -13,11 +13,12 @@ from dataclasses import dataclass, replace
 
 from contactlogic.job.sequence import Timing
 from contactlogic.network import Network
-from contactlogic.sequence.prove import prove_network
+from contactlogic.sequence.prove import network_motion, prove_network
 from contactlogic.sequence.steps import Expansion
+from contactlogic.sequence.transit import transits
 from contactlogic.truth import Target
 
-__all__ = ["Recovers", "homing"]
+__all__ = ["Blemishes", "Recovers", "homing", "shared_coils"]
 
 _STICKS = 100_000  # excess of a network that does not recover: no repeater takes it off
 _HUNTS = 50_000
@@ -73,3 +74,32 @@ class Recovers:
             network, self.timing, self.expansion, inputs_return=self.inputs_return
         )
         return {"recovers": 0, "hunts": _HUNTS}.get(found.verdict or "", _STICKS)
+
+
+@dataclass(frozen=True)
+class Blemishes:
+    """Counts what section 4 avoids among designs of equal poles.
+
+    Gaps and flashes at coils while a relay moves, and stored coils that share their net with
+    another load, which shortens their hold.
+    """
+
+    timing: Timing
+    expansion: Expansion
+
+    def __call__(self, network: Network) -> int:
+        motion = network_motion(network, self.timing, self.expansion)
+        states = [step.state for step in self.expansion.steps]
+        shared = len(shared_coils(network, self.timing))
+        return len(transits(network, motion, states)) + shared
+
+
+def shared_coils(network: Network, timing: Timing) -> tuple[str, ...]:
+    """Slow coils whose very net feeds another load too."""
+    nets = [net for net in network.loads.values() if net is not None]
+    slow = {*timing.slow_release, *timing.slow_operate}
+    return tuple(
+        load
+        for load, net in network.loads.items()
+        if load in slow and net is not None and nets.count(net) > 1
+    )
