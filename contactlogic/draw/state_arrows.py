@@ -16,7 +16,7 @@ from contactlogic.draw.sheet import Point
 __all__ = ["Box", "Curve", "Labels", "bent", "cut", "route"]
 
 _BENDS = (0.0, *(side * k / 100 for k in (8, 15, 22, 30, 40, 52, 66) for side in (1, -1)))
-_DETOUR = 1 / 160  # what a point of detour counts, against one for a box met
+_DETOUR = 1 / 110  # what a point of detour counts, against one for a box met
 _CLEAR = 3.5  # distance kept from other boxes
 _HEAD = 6.5  # length of an arrowhead
 _SAMPLES = 20
@@ -61,6 +61,12 @@ class Curve:
 
     def samples(self) -> list[Point]:
         return [self.at(k / _SAMPLES) for k in range(_SAMPLES + 1)]
+
+    def pieces(self, width: float, height: float) -> list[Curve]:
+        """The curve in pieces whose control points keep to a sheet (renderers count them in)."""
+        outside = any(not (0 <= x <= width and 0 <= y <= height) for x, y in self.points)
+        count = 4 if outside else 1
+        return [self.part(k / count, (k + 1) / count) for k in range(count)]
 
     def part(self, start: float, stop: float) -> Curve:
         """The stretch between two parameters."""

@@ -110,10 +110,10 @@ class _Layouter:
             beside = self._below(group) + tall  # of a single state's plate
             single = len(group.states) == 1
             room = (beside + self.half_height + 8) / self.y_unit
-            if not single:
-                room = max(
-                    (wide / 2 + self.half_width + 12) / self.x_unit,
-                    (tall / 2 + self.half_height + 10) / self.y_unit,
+            if not single:  # whichever way the ring is turned
+                room = math.hypot(
+                    (wide / 2 + self.half_width + _DOUBLE + 4) / self.x_unit,
+                    (tall / 2 + self.half_height + _DOUBLE + 4) / self.y_unit,
                 )
             islands.append(
                 Island(
@@ -175,7 +175,9 @@ class _Layouter:
             if curve is None:
                 others = [box for state, box in boxes.items() if state not in (here, there)]
                 back = (there, here) in known
-                curve = route(boxes[here], boxes[there], [*others, *plates], both_ways=back)
+                curve = route(
+                    boxes[here], boxes[there], [*others, *plates, *plates], both_ways=back
+                )
             curve, tip = cut(curve, boxes[here], boxes[there])
             curves.append(curve)
             tips.append(tip)

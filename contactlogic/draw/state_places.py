@@ -75,23 +75,37 @@ def place_islands(
             beside.setdefault(one, []).append(two)
             beside.setdefault(two, []).append(one)
     shapes = [_place(island, beside) for island in islands]
+    # In the order given, but lone states last, where they fill a shelf.
+    order = sorted(range(len(islands)), key=lambda k: (len(shapes[k][0]) == 1, k))
     turns = [0.0] * len(islands)
-    at: dict[N, Point] = {}
-    centres: list[Point] = []
-    for _ in range(3):  # islands are turned so that moves between them are short, and packed anew
-        sizes = [
-            _extent(island, polar, turn)
-            for island, (polar, _), turn in zip(islands, shapes, turns, strict=True)
-        ]
-        centres = _shelves(sizes, aspect, margin)
-        for k, (polar, _) in enumerate(shapes):
-            at.update(_points(polar, turns[k], centres[k]))
+    at, centres = _packed(islands, shapes, turns, order, aspect, margin)
+    for _ in range(2):  # islands are turned so that moves between them are short, and packed anew
         for k in range(1, len(islands)):
             turns[k] = _best_turn(islands[k], shapes[k][0], centres[k], at, beside, turns[k])
-    for k, (polar, _) in enumerate(shapes):
-        at.update(_points(polar, turns[k], centres[k]))
+            at.update(_points(shapes[k][0], turns[k], centres[k]))
+        at, centres = _packed(islands, shapes, turns, order, aspect, margin)
     rings = tuple(ring for _, ring in shapes)
     return Placed(at, tuple(centres), rings, tuple(turns))
+
+
+def _packed(
+    islands: Sequence[Island[N]],
+    shapes: Sequence[tuple[Mapping[N, Point], float]],
+    turns: Sequence[float],
+    order: Sequence[int],
+    aspect: float,
+    margin: float,
+) -> tuple[dict[N, Point], list[Point]]:
+    """Positions of all states and the centres of islands, turned as they are."""
+    sizes = [
+        _extent(island, polar, turn)
+        for island, (polar, _), turn in zip(islands, shapes, turns, strict=True)
+    ]
+    centres = _shelves(sizes, order, aspect, margin)
+    at: dict[N, Point] = {}
+    for (polar, _), turn, centre in zip(shapes, turns, centres, strict=True):
+        at.update(_points(polar, turn, centre))
+    return at, centres
 
 
 def _points(polar: Mapping[N, Point], turn: float, centre: Point) -> dict[N, Point]:
@@ -263,12 +277,14 @@ def _spread(layer: Sequence[N], wanted: Mapping[N, float], radius: float) -> dic
 
 
 def _shelves(
-    sizes: Sequence[tuple[float, float, float, float]], aspect: float, margin: float
+    sizes: Sequence[tuple[float, float, float, float]],
+    order: Sequence[int],
+    aspect: float,
+    margin: float,
 ) -> list[Point]:
-    """Centres of islands of given extents on shelves, the tallest first."""
+    """Centres of islands of given extents, put on shelves in order."""
     wide = [right - left + margin for left, _, right, _ in sizes]
     tall = [bottom - top + margin for _, top, _, bottom in sizes]
-    order = sorted(range(len(sizes)), key=lambda i: (-round(tall[i], 6), i))
     area = sum(w * h for w, h in zip(wide, tall, strict=True))
     width = max(*wide, math.sqrt(area * aspect) * 1.15, 0.0)
     shelves: list[list[int]] = []

@@ -171,7 +171,9 @@ class _Sheet:
 
     def _draw_arrow(self, arrow: Arrow) -> None:
         here, there = arrow.move
-        points = " ".join(self._at(point) for point in arrow.curve.points)
+        pieces = arrow.curve.pieces(self.layout.width, self.layout.height)
+        along = [pieces[0].points[0], *(point for piece in pieces for point in piece.points[1:])]
+        points = " ".join(self._at(point) for point in along)
         ends = self._name(here), self._name(there)
         if min(arrow.move) < 0:
             style = {"pos": points, "style": "dotted", "arrowhead": "none", "penwidth": "2"}

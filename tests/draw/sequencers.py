@@ -128,3 +128,24 @@ def holding(count: int) -> Sequencer:
         return lambda at: at[name]
 
     return Sequencer(names, {name: drive(name) for name in names})
+
+
+def from_tables(tables: Sequence[int], slow: bool) -> Sequencer:
+    """Four relays whose drives are given state by state; A slow to release or none."""
+    names = tuple("ABCD")
+
+    def drive(table: int) -> Drive:
+        def fed(at: Mapping[str, int]) -> int:
+            out = at["A"] & ~at["A"]
+            for state in range(16):
+                if table >> state & 1:
+                    here = at["A"] | ~at["A"]
+                    for i, name in enumerate(names):
+                        here &= at[name] if state >> i & 1 else ~at[name]
+                    out |= here
+            return out
+
+        return fed
+
+    drives = {name: drive(table) for name, table in zip(names, tables, strict=True)}
+    return Sequencer(names, drives, ("A",) if slow else ())

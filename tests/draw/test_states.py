@@ -10,7 +10,9 @@ from itertools import combinations
 from pathlib import Path
 
 import pytest
-from draw.sequencers import Sequencer, counter, cross_coupled, holding, ring
+from draw.sequencers import Sequencer, counter, cross_coupled, from_tables, holding, ring
+from hypothesis import given, settings
+from hypothesis import strategies as st
 
 from contactlogic.draw import state_graph
 from contactlogic.draw.render import find_renderer, render
@@ -104,7 +106,24 @@ def test_every_state_and_every_move_is_drawn(name: str) -> None:
 @pytest.mark.parametrize("name", [*sorted(EXAMPLES), "ring_of_8", "counter_of_8"])
 def test_nothing_stands_on_anything_else(name: str) -> None:
     more = {"ring_of_8": ring(8), "counter_of_8": counter(8)}
-    found = nodes(drawn({**EXAMPLES, **more}[name]))
+    assert_apart(drawn({**EXAMPLES, **more}[name]))
+
+
+@given(tables=st.lists(st.integers(0, 2**16 - 1), min_size=4, max_size=4), slow=st.booleans())
+@settings(max_examples=25, deadline=None)
+def test_any_drives_are_drawn_whole_and_apart(tables: list[int], slow: bool) -> None:
+    sequencer = from_tables(tables, slow)
+    dot = drawn(sequencer)
+    assert {number(state) for state in states(dot)} == set(range(16))
+    assert {(number(a), number(b)) for a, b in arrows(dot)} == sequencer.moves()
+    traps = [trap for trap in sequencer.recovery().traps if not trap.wanted]
+    plates = [style["label"] for style in nodes(dot).values() if "TRAP" in style.get("label", "")]
+    assert len(plates) == len(traps)
+    assert_apart(dot)
+
+
+def assert_apart(dot: str) -> None:
+    found = nodes(dot)
     boxes = {
         node: box(style)
         for node, style in found.items()
@@ -245,13 +264,14 @@ def test_hostile_titles(title: str) -> None:
     assert len(nodes(drawn(cross_coupled(), title))) == len(nodes(drawn(cross_coupled())))
 
 
+@pytest.mark.parametrize("count", [4, 6])
 @needs_renderer
-def test_the_renderer_keeps_the_places() -> None:
-    dot = drawn(ring(4))
+def test_the_renderer_keeps_the_places(count: int) -> None:
+    dot = drawn(ring(count))
     svg = render(dot, ("svg",))["svg"].decode()
     right = float(nodes(dot)["corner2"]["pos"].split(",")[0])
     assert abs(float(re.search(r'width="([\d.]+)pt"', svg)[1]) - right) < 3  # type: ignore[index]
-    assert svg.count('class="node cycle"') == 8
+    assert svg.count('class="node cycle"') == 2 * count
 
 
 def test_same_text_whatever_the_hash_seed() -> None:
