@@ -50,8 +50,9 @@ class WindowProblem:
 
 @dataclass(frozen=True)
 class Replacement:
-    """Outcome: "sat" with the poles, "unsat" (proved that there are none), or "unknown".
+    """Outcome: "sat" with the poles, "unsat", or "unknown".
 
+    "unsat" is no proof: poles that join two boundary nets for good are not all looked at.
     Nets from `WindowProblem.nets` upwards are new.
     """
 

@@ -10,6 +10,11 @@ joined among the fixed nets in any row, the number of poles or the number of con
  d. two changeovers of one relay with one common trade their breaks;
  e. (`ends_alike`) nets 0 and 1 trade names, where every row treats them alike.
 
+Step d may leave a pole with both throws on one net, which no clause allows.  Then its common and
+that net are joined in every row, released by one pole and operated by the other.  Such a network
+is not looked for: with the two nets made one it has a pole less and does the same, loads of the two
+nets sharing it.  (Between boundary nets of a window that cannot be done; windows prove nothing.)
+
 Write a network as the word of its numbers: kinds of all poles, then common, make, break of the
 first pole, of the second, and so on, "not wired" being larger than every net.  Each class has a
 least word.  Every clause of `break_symmetry` holds for the least word, because otherwise one of
