@@ -2,18 +2,20 @@
 
 from __future__ import annotations
 
+import contextlib
 import csv
 import json
 import os
-import random
+import re
 import signal
 import subprocess
 import sys
-import time
+from dataclasses import replace
 from pathlib import Path
+from xml.etree import ElementTree
 
 import pytest
-from handmade import SLUICE_JOB, SLUICE_RESULT
+from handmade import SLUICE_BOTH, SLUICE_JOB
 from typer.testing import CliRunner
 
 import contactlogic.draw
@@ -35,14 +37,28 @@ rows = \"\"\"
 \"\"\"
 """
 
-PAPERS = [
-    "design.json",
-    "ladder/drawing.png",
-    "ladder/drawing.svg",
-    "ladder/schedule.csv",
-    "ladder/wiring.csv",
-    "report.md",
-]
+NAMES = ("drawing.png", "drawing.svg", "schedule.csv", "wiring.csv")
+
+
+def papers(*forms: str) -> list[str]:
+    """Every file of a folder with designs of these forms."""
+    return sorted(["design.json", "report.md", *(f"{f}/{name}" for f in forms for name in NAMES)])
+
+
+PAPERS = papers("bridge", "ladder")
+
+WRITTEN = (
+    "design.json, report.md, "
+    + ", ".join(f"bridge/{name}" for name in NAMES)
+    + ", "
+    + ", ".join(f"ladder/{name}" for name in NAMES)
+)
+
+VOTE = """\
+title = "Vote"
+[formulas]
+MOST = "2oo3(A, B, C)"
+"""
 
 
 @pytest.fixture
@@ -74,22 +90,122 @@ def test_a_job_in_all(here: Path) -> None:
     assert done.returncode == 0, done.stderr
     assert done.stderr == ""
     data = json.loads((here / "stairs" / "design.json").read_text())
-    mark = f"ladder {data['designs'][0]['fingerprint']}"
     lines = done.stdout.splitlines()
-    assert lines[0] == "no load is on with every relay released"
-    assert lines[1] == f"{mark} Stairs"
-    assert "poles:       2" in lines
-    assert "proved: all 4 rows as wanted, none free" in lines
-    assert lines[-1] == (
-        "written to stairs: design.json, report.md, ladder/drawing.png, ladder/drawing.svg, "
-        "ladder/schedule.csv, ladder/wiring.csv"
-    )
+    assert lines[:2] == ["no load is on with every relay released", ""]
+    assert lines[2] == f"ladder {data['designs'][0]['fingerprint']} Stairs"
+    assert f"bridge {data['designs'][1]['fingerprint']} Stairs" in lines
+    assert lines.count("poles:       2") == 2
+    assert lines.count("proved: all 4 rows as wanted, none free") == 2
+    assert lines[-2] == "the bridge saves no pole on the ladder"
+    assert lines[-1] == f"written to stairs: {WRITTEN}"
     assert _files(here / "stairs") == PAPERS
-    assert (here / "stairs/ladder/drawing.png").read_bytes().startswith(b"\x89PNG")
-    for name in ("report.md", "ladder/drawing.svg", "ladder/wiring.csv", "ladder/schedule.csv"):
-        text = (here / "stairs" / name).read_text()
-        assert data["designs"][0]["fingerprint"] in text
-        assert "Stairs" in text
+    for design in data["designs"]:
+        folder = here / "stairs" / design["form"]
+        assert (folder / "drawing.png").read_bytes().startswith(b"\x89PNG")
+        for name in ("../report.md", "drawing.svg", "wiring.csv", "schedule.csv"):
+            text = (folder / name).read_text()
+            assert design["fingerprint"] in text
+            assert "Stairs" in text
+
+
+def test_the_keys_of_the_json_contract(here: Path) -> None:
+    """Exactly those of the result contract, in its order; other programs read them."""
+    (here / "vote.toml").write_text(VOTE + "[limits]\npoles = { A = 1 }\n")
+    done = _command("wire", "vote.toml", "--json", "--effort", "5", "--repeaters", cwd=here)
+    assert done.returncode == 0, done.stderr
+    data = json.loads(done.stdout)
+    assert list(data) == ["schema", "title", "relays", "repeaters", "designs"]
+    assert (data["schema"], data["title"]) == ("contactlogic/design/1", "Vote")
+    assert data["relays"][:3] == ["A", "B", "C"]
+    assert [design["form"] for design in data["designs"]] == ["ladder", "bridge"]
+    for design in data["designs"]:
+        assert list(design) == [
+            *("form", "fingerprint", "supply", "loads", "contacts", "changeovers"),
+            *("per_relay", "bound", "verified_rows"),
+        ]
+        for contact in design["contacts"]:
+            assert list(contact) == ["relay", "pole", "common", "make", "break"]
+        for count in design["per_relay"].values():
+            assert list(count) == ["poles", "makes", "breaks", "changeovers"]
+        assert list(design["bound"]) == ["at_least", "proven_minimum"]
+        assert design["changeovers"] == len(design["contacts"])
+        assert design["per_relay"]["A"]["poles"] <= 1
+        assert design["verified_rows"] == 8
+
+
+@pytest.mark.parametrize("form", ["ladder", "bridge"])
+def test_one_form_alone_takes_the_other_away(here: Path, form: str) -> None:
+    assert CliRunner().invoke(app, ["wire", "stairs.toml"]).exit_code == 0
+    ran = CliRunner().invoke(app, ["wire", "stairs.toml", "--form", form])
+    assert ran.exit_code == 0, ran.stderr
+    assert _files(here / "stairs") == papers(form)
+    (design,) = json.loads((here / "stairs/design.json").read_text())["designs"]
+    assert design["form"] == form
+    assert "saves" not in ran.stdout
+
+
+def test_a_folder_never_holds_papers_of_two_jobs(here: Path) -> None:
+    (here / "gate.csv").write_text("UP,DOWN,LAMP\n1,0,1\n0,1,0\n")
+    for arguments in (["stairs.toml"], ["gate.csv", "--loads", "LAMP", "--unlisted", "off"]):
+        ran = CliRunner().invoke(app, ["wire", *arguments, "--out", "papers"])
+        assert ran.exit_code == 0, ran.stderr
+    assert _files(here / "papers") == PAPERS
+    data = json.loads((here / "papers/design.json").read_text())
+    marks = {design["form"]: design["fingerprint"] for design in data["designs"]}
+    for name in PAPERS:
+        if not name.endswith((".json", ".png")):
+            text = (here / "papers" / name).read_text()
+            assert "Stairs" not in text, name
+            assert marks.get(name.partition("/")[0], marks["ladder"]) in text, name
+
+
+def test_time_and_effort_exclude_each_other(here: Path) -> None:
+    ran = CliRunner().invoke(app, ["wire", "stairs.toml", "--seconds", "5", "--effort", "5"])
+    assert (ran.exit_code, ran.stdout) == (2, "")
+    assert ran.stderr == (
+        "contactlogic: --seconds and --effort exclude each other\n  give one of them\n"
+    )
+    assert _files(here) == ["stairs.toml"]
+
+
+def test_a_budget_for_every_relay_is_refused_or_met_with_repeaters(here: Path) -> None:
+    # a vote of 3 takes 4 changeovers, so one of three relays needs a second
+    (here / "vote.toml").write_text(VOTE)
+    arguments = ["wire", "vote.toml", "--poles-per-relay", "1", "--effort", "5"]
+    ran = CliRunner().invoke(app, arguments)
+    assert (ran.exit_code, ran.stdout) == (2, "")
+    assert re.match(r"contactlogic: vote.toml: \[limits\]: [ABC] may use 1 pole", ran.stderr)
+    assert "--repeaters" in ran.stderr
+    assert _files(here) == ["stairs.toml", "vote.toml"]
+    ran = CliRunner().invoke(app, [*arguments, "--repeaters"])
+    assert ran.exit_code == 0, ran.stderr
+    data = json.loads((here / "vote/design.json").read_text())
+    assert data["repeaters"]
+    for name, relay in data["repeaters"].items():
+        assert f"note: {name} is a repeater of {relay}: its coil in parallel with" in ran.stdout
+    for design in data["designs"]:
+        assert max(count["poles"] for count in design["per_relay"].values()) == 1
+    ran = CliRunner().invoke(app, ["verify", "vote/design.json", "vote.toml"])
+    assert ran.exit_code == 0, ran.stdout
+
+
+HOSTILE = r"=cmd \"<b>&amp;\\ \u001b[31m {x} %s | `\n#2"  # escapes are TOML's
+
+
+def test_hostile_titles_change_nothing_but_the_title(here: Path) -> None:
+    (here / "stairs.toml").write_text(STAIRS.replace("Stairs", HOSTILE))
+    ran = CliRunner().invoke(app, ["wire", "stairs.toml"])
+    assert ran.exit_code == 0, ran.stderr
+    assert "\x1b" not in ran.stdout
+    assert ran.stdout.splitlines()[2].endswith(' =cmd "<b>&amp;\\ [31m {x} %s | ` #2')
+    assert _files(here / "stairs") == PAPERS
+    title = json.loads((here / "stairs/design.json").read_text())["title"]
+    assert title == '=cmd "<b>&amp;\\ \x1b[31m {x} %s | `\n#2'
+    for form in ("ladder", "bridge"):
+        picture = ElementTree.parse(here / "stairs" / form / "drawing.svg")
+        assert '=cmd "<b>&amp;\\' in "".join(picture.getroot().itertext()).replace("\xa0", " ")
+        with (here / "stairs" / form / "wiring.csv").open(newline="") as file:
+            assert {len(row) for row in csv.reader(file)} == {5}
 
 
 def test_json_is_alone_on_standard_output_and_no_file_is_written(here: Path) -> None:
@@ -113,7 +229,8 @@ def test_design_file_and_json_output_are_the_same(here: Path) -> None:
 def test_same_bytes_under_another_hash_seed(here: Path) -> None:
     job = str(Path(__file__).parents[2] / "examples" / "ferry.toml")
     for seed in ("1", "77"):
-        done = _command("wire", job, "--out", f"out{seed}", "-q", cwd=here, PYTHONHASHSEED=seed)
+        arguments = ("wire", job, "--out", f"out{seed}", "-q", "--effort", "2")
+        done = _command(*arguments, cwd=here, PYTHONHASHSEED=seed)
         assert done.returncode == 0, done.stderr
     one, two = (here / f"out{seed}" for seed in ("1", "77"))
     assert _files(one) == PAPERS
@@ -230,18 +347,15 @@ def test_verbose_tells_how_each_cover_was_found() -> None:
 def by_hand(here: Path, monkeypatch: pytest.MonkeyPatch) -> Path:
     """The command with a job and a result made by hand in place of the search."""
     monkeypatch.setattr(contactlogic.job, "load_job", lambda _path: SLUICE_JOB)
-    monkeypatch.setattr("contactlogic.synthesis.wire", lambda _job, **_options: SLUICE_RESULT)
+    monkeypatch.setattr("contactlogic.synthesis.synthesise", lambda _job, _search: SLUICE_BOTH)
     return here
 
 
 def test_screen_text(by_hand: Path) -> None:
     ran = CliRunner().invoke(app, ["wire", "stairs.toml", "--out", "papers"])
-    golden = Path(__file__).parents[1] / "report" / "golden" / "summary.txt"
+    golden = Path(__file__).parents[1] / "report" / "golden" / "summary-both.txt"
     assert ran.exit_code == 0, ran.stderr
-    assert ran.stdout == golden.read_text() + (
-        "written to papers: design.json, report.md, ladder/drawing.png, ladder/drawing.svg, "
-        "ladder/schedule.csv, ladder/wiring.csv\n"
-    )
+    assert ran.stdout == golden.read_text() + f"written to papers: {WRITTEN}\n"
     with (by_hand / "papers/ladder/wiring.csv").open(newline="") as file:
         assert next(csv.reader(file)) == ["wire", "net", "from", "to", "design"]
 
@@ -255,15 +369,19 @@ def test_without_a_renderer_the_text_of_the_drawing_is_written(
     monkeypatch.setattr(contactlogic.draw, "render", render)
     ran = CliRunner().invoke(app, ["wire", "stairs.toml"])
     assert ran.exit_code == 0
-    assert "drawing.gv was written instead: no renderer found\n" in ran.stdout
-    assert _files(by_hand / "stairs") == [
-        "design.json",
-        "ladder/drawing.gv",
-        "ladder/schedule.csv",
-        "ladder/wiring.csv",
-        "report.md",
-    ]
-    assert "graph" in (by_hand / "stairs/ladder/drawing.gv").read_text()
+    wanted = set(PAPERS)
+    for form in ("ladder", "bridge"):
+        said = f"note: no picture of the {form}, its drawing.gv was written instead: no renderer"
+        assert f"{said} found\n" in ran.stdout
+        assert "graph" in (by_hand / "stairs" / form / "drawing.gv").read_text()
+        wanted -= {f"{form}/drawing.svg", f"{form}/drawing.png"}
+        wanted |= {f"{form}/drawing.gv"}
+    assert _files(by_hand / "stairs") == sorted(wanted)
+    # the next run, with a renderer, replaces the texts by pictures and needs no force
+    monkeypatch.undo()
+    monkeypatch.chdir(by_hand)
+    assert CliRunner().invoke(app, ["wire", "stairs.toml"]).exit_code == 0
+    assert _files(by_hand / "stairs") == PAPERS
 
 
 @pytest.mark.parametrize(
@@ -299,7 +417,7 @@ def test_faults_print_no_design(
     def wire(*_: object, **__: object) -> None:
         raise error
 
-    monkeypatch.setattr("contactlogic.synthesis.wire", wire)
+    monkeypatch.setattr("contactlogic.synthesis.synthesise", wire)
     ran = CliRunner().invoke(app, ["wire", "stairs.toml", *option])
     assert (ran.exit_code, ran.stderr, ran.stdout) == (status, message, "")
     assert _files(by_hand) == ["stairs.toml"]
@@ -325,30 +443,55 @@ def test_a_failure_in_mid_write_leaves_nothing(
     assert sorted(p.name for p in by_hand.iterdir()) == ["stairs.toml"]
 
 
-def test_ctrl_c_ends_in_130_and_leaves_nothing(here: Path) -> None:
-    """Random rows of 8 inputs and 4 loads keep the search busy far longer than the wait."""
-    rng = random.Random(5)
-    rows = "\n".join(
-        " ".join(str(row >> i & 1) for i in range(8)) + " | " + " ".join(rng.choices("01", k=4))
-        for row in range(256)
-    )
-    names = " ".join(f"K{i}" for i in range(8))
-    (here / "long.toml").write_text(
-        f'[table]\ncolumns = "{names} | L0 L1 L2 L3"\nrows = """\n{rows}\n"""\n'
-    )
+def test_an_interrupted_search_is_told_and_its_papers_are_written(
+    by_hand: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    stopped = replace(SLUICE_BOTH, interrupted=True)
+    monkeypatch.setattr("contactlogic.synthesis.synthesise", lambda _job, _search: stopped)
+    ran = CliRunner().invoke(app, ["wire", "stairs.toml"])
+    assert ran.exit_code == 130
+    assert "stopped early: this is the best found so far\n" in ran.stdout
+    assert "The search was stopped early." in (by_hand / "stairs/report.md").read_text()
+    assert _files(by_hand / "stairs") == PAPERS
+    ran = CliRunner().invoke(app, ["wire", "stairs.toml", "--json"])
+    assert ran.exit_code == 130
+    assert len(json.loads(ran.stdout)["designs"]) == 2
+    assert ran.stderr == "contactlogic: stopped early: this is the best found so far\n"
+
+
+def test_ctrl_c_keeps_the_best_design(here: Path) -> None:
+    """A real search, stopped as a terminal stops it: by a signal to the whole process group.
+
+    Its live line, on a terminal made for the purpose, tells that the search is under way.
+    """
+    job = Path(__file__).parents[2] / "examples" / "tide.toml"
     tool = Path(sys.executable).with_name("contactlogic")
+    screen, end = os.openpty()
     with subprocess.Popen(
-        [str(tool), "wire", "long.toml"],
+        [str(tool), "wire", str(job), "--out", "tide", "--seconds", "300"],
         stdout=subprocess.PIPE,
-        stderr=subprocess.PIPE,
+        stderr=end,
         text=True,
         cwd=here,
+        env=os.environ | {"COLUMNS": "120", "TERM": "xterm"},
+        start_new_session=True,
     ) as process:
-        time.sleep(3)
-        process.send_signal(signal.SIGINT)
-        said, complaint = process.communicate()
-    assert (process.returncode, said, complaint) == (130, "", "contactlogic: stopped\n")
-    assert _files(here) == ["long.toml", "stairs.toml"]
+        os.close(end)
+        seen = b""
+        while not re.search(rb"ladder \d+, bridge \d+ poles, at least \d+ proved, \d+ s", seen):
+            seen += os.read(screen, 4096)
+        os.killpg(process.pid, signal.SIGINT)
+        with contextlib.suppress(OSError):  # Linux: the other end is closed
+            while os.read(screen, 4096):
+                pass
+        said, _ = process.communicate()
+    os.close(screen)
+    assert process.returncode == 130
+    assert "stopped early: this is the best found so far" in said
+    assert re.search(r"^bound: at least \d+ poles, ", said, flags=re.MULTILINE)
+    assert _files(here / "tide") == PAPERS
+    ran = CliRunner().invoke(app, ["verify", "tide/design.json", str(job)])
+    assert ran.exit_code == 0, ran.stdout
 
 
 def test_a_closed_pipe_is_no_fault(here: Path) -> None:
