@@ -119,7 +119,9 @@ class _Sheet:
         else:
             name = "end of sequence" if self.facts.sequence else "rest"
         if group.basin is None:
-            return (f"{name.upper()}: NOT KEPT", count)
+            lines = (f"{name.upper()}: NOT KEPT", count)
+            held = self.scene.trapped.intersection(group.states)
+            return (*lines, "TRAP: the double outlines") if held else lines
         return (name, count + basin)
 
     def _draw_plate(self, name: str, group: Group, lines: Sequence[str], box: Box) -> None:

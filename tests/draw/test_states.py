@@ -217,7 +217,12 @@ def test_a_sequence_that_is_left_says_so() -> None:
     sequencer = Sequencer(whole.columns, drives, whole.slow, whole.expansion)
     dot = drawn(sequencer)
     assert "the sequence can be left at 1100" in dot
-    assert any("NOT KEPT" in style.get("label", "") for style in nodes(dot).values())
+    (plate,) = (s["label"] for s in nodes(dot).values() if "NOT KEPT" in s.get("label", ""))
+    assert "TRAP" in plate
+    double = {number(s) for s, style in states(dot).items() if style.get("peripheries") == "2"}
+    (trap,) = sequencer.recovery().traps
+    assert len(double) == trap.states
+    assert_apart(dot)
     assert {number(state) for state in states(dot)} == set(range(16))
     assert float(arrows(dot)["1100", "1110"]["penwidth"]) > 2
 
