@@ -53,24 +53,29 @@ def test_the_main_command_prints_what_the_readme_shows(
     ran = CliRunner().invoke(app, _wire_arguments(MAIN))
     assert ran.exit_code == 0, ran.stderr
     shown = next(block for block in _blocks("text") if block.startswith(("no load is", "on with")))
-    assert ran.stdout == shown
+    assert ran.stdout == shown, "after a change of the search: python tests/readme/refresh.py"
     for name in re.findall(r"`((?:ladder/)?[a-z]+\.(?:json|md|svg|png|csv))`", README):
         if name != "wiring.csv":  # the short form, in running text
-            assert (tmp_path / "sluice" / name).is_file(), name
+            assert (tmp_path / "ferry" / name).is_file(), name
+    command, said = next(b for b in _blocks("text") if b.startswith("$ ")).split("\n", 1)
+    ran = CliRunner().invoke(app, shlex.split(command)[2:])
+    assert (ran.exit_code, ran.stdout) == (0, said)
 
 
 def test_the_table_shown_is_the_example() -> None:
-    shown = next(block for block in _blocks("toml") if "HORN" in block)
-    assert shown in (ROOT / "examples" / "sluice.toml").read_text(encoding="utf-8")
+    (shown,) = _blocks("csv")
+    assert shown == (ROOT / "examples" / "ferry.csv").read_text(encoding="utf-8")
 
 
-def test_the_picture_shown_is_of_the_design_shown() -> None:
-    (path,) = re.findall(r"!\[[^]]*\]\(([^)]*)\)", README)
-    assert (ROOT / path).stat().st_size < 100_000
-    (mark,) = re.findall(r"^(ladder [0-9a-f]{6}) Sluice house$", README, flags=re.MULTILINE)
-    picture = (ROOT / path).read_text(encoding="utf-8").replace("&#160;", " ")
-    assert mark in picture
-    assert "Sluice house" in picture
+def test_the_pictures_shown_are_of_the_designs_shown() -> None:
+    paths = re.findall(r"!\[[^]]*\]\(([^)]*)\)", README)
+    marks = re.findall(r"^((?:ladder|bridge) [0-9a-f]{6}) Ferry landing$", README, re.MULTILINE)
+    assert len(marks) == 2
+    for path, mark in zip(paths, marks, strict=True):
+        assert (ROOT / path).stat().st_size < 60_000
+        picture = (ROOT / path).read_text(encoding="utf-8").replace("&#160;", " ")
+        assert mark in picture
+        assert "Ferry landing" in picture
 
 
 def test_other_files_named_are_there() -> None:
@@ -91,9 +96,15 @@ def test_examples_begin_with_a_comment_and_can_be_wired(
 ) -> None:
     assert path.read_text(encoding="utf-8").startswith("# ")
     monkeypatch.chdir(tmp_path)
-    ran = CliRunner().invoke(app, ["wire", str(path), "--seconds", "10"])
+    ran = CliRunner().invoke(app, ["wire", str(path), "--effort", "8"])
     assert ran.exit_code == 0, ran.stderr
     assert "\nproved: all " in ran.stdout
+
+
+def test_the_examples_named_are_there() -> None:
+    named = set(re.findall(r"`([a-z]+\.toml)`", README[: README.index("## The commands")]))
+    assert named <= {path.name for path in (ROOT / "examples").glob("*.toml")}
+    assert len(named) >= 8
 
 
 def test_the_python_example_runs(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
@@ -119,13 +130,13 @@ def test_the_job_file_of_the_readme_can_be_wired(
     (tmp_path / "three.toml").write_text(from_file)
     shutil.copy(ROOT / "examples" / "ferry.csv", tmp_path)
     for name in ("one", "two", "three"):
-        ran = CliRunner().invoke(app, ["wire", f"{name}.toml", "--seconds", "5"])
+        ran = CliRunner().invoke(app, ["wire", f"{name}.toml", "--effort", "1"])
         assert ran.exit_code == 0, ran.stderr
 
 
 def test_options_and_exit_statuses_are_those_of_the_command() -> None:
-    listed = set(re.findall(r"^\| `(--[a-z]+)", README, flags=re.MULTILINE))
-    offered = set(re.findall(r"--[a-z]+", CliRunner().invoke(app, ["wire", "--help"]).stdout))
+    listed = set(re.findall(r"^\| `(--[a-z-]+)", README, flags=re.MULTILINE))
+    offered = set(re.findall(r"--[a-z-]+[a-z]", CliRunner().invoke(app, ["wire", "--help"]).stdout))
     assert listed == {option for option in offered if not option.startswith(("--no-", "--help"))}
 
 
@@ -161,6 +172,6 @@ def test_the_commands_as_written_in_a_fresh_clone(command: str, tmp_path: Path) 
     )
     assert done.returncode == 0, done.stdout[-3000:] + done.stderr[-3000:]
     if command == MAIN:
-        assert (clone / "sluice" / "design.json").is_file()
+        assert (clone / "ferry" / "design.json").is_file()
     else:
         assert re.search(r"\d+ passed", done.stdout)
