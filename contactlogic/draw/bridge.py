@@ -42,6 +42,7 @@ _ABOVE = 37.0
 _NARROW = 22.0  # between two verticals with no symbol between them
 _HOP = 4.0
 _NEAR, _LONG = 40.0, 45.0  # a number this near, or a vertical shorter, needs none of its own
+_SHORT = 150.0  # a straight wire this short carries one number instead of two
 _MARGIN = 56.0
 _LEAST_WIDTH, _EASE = 560.0, 28.0
 _NEVER = "never on: left unwired"
@@ -255,8 +256,9 @@ class _Frame:
         for net, own in by_net.items():
             number = str(self.text.numbers[net])
             heights = [end.at[1] for end in own]
-            single = len(own) == 2 and heights[0] == heights[1] and net != self.network.supply
-            if single and net != RETURN:
+            straight = len(own) == 2 and heights[0] == heights[1]
+            short = straight and abs(own[0].label - own[1].label) < _SHORT
+            if short and net not in (self.network.supply, RETURN):
                 self._number(pen, number, (own[0].column, heights[0] - _LABEL_RISE))
                 continue
             for end in own:
@@ -266,7 +268,7 @@ class _Frame:
             low, high = min(heights), max(heights)
             if high - low < (_LONG if len(own) > 2 else 2 * _LONG):
                 continue
-            for height, rise in ((low, -7.5), (high, 8.0)):
+            for height, rise in ((low, -8.5), (high, 8.5)):
                 near = (abs(e.label - e.column) for e in own if e.at[1] == height)
                 if min(near) > _NEAR:
                     self._number(pen, number, (own[0].column, height + rise))

@@ -26,11 +26,13 @@ __all__ = ["Arrangement", "Lead", "Part", "arrange_parts", "is_straight", "leads
 
 # What a fault costs: a crossing, a vertical per row, a row, a lead per column, a tee, a gap that
 # must be wide enough for symbols, a contact that leads back towards the supply, two neighbouring
-# loads out of their order.
-_CROSSING, _DOWN, _ROW, _ALONG = 14.0, 2.0, 5.0, 1.0
-_TEE, _GAP, _BACK, _ORDER = 4.0, 4.0, 1.5, 2.5
+# loads out of their order; a point of width beyond a landscape sheet of the same height.
+_CROSSING, _DOWN, _ROW, _ALONG = 20.0, 2.0, 5.0, 1.0
+_TEE, _GAP, _BACK, _ORDER, _WIDE = 4.0, 1.5, 3.0, 2.5, 0.06
+_GAP_SIZE, _COLUMN_SIZE, _ROW_SIZE, _SHAPE = 75.0, 22.0, 62.0, 1.5  # about; width to height
 _SEED = 1938
-_RUNS = 3
+_RUNS, _MOST_RUNS = 4, 12  # small networks are cheap to run again
+_HEAT, _NEARBY = 10.0, 0.7  # first temperature; share of moves that stay within three places
 _STEPS, _MOST_WORK = 130, 300_000  # steps of a run for each part and column; steps times these
 
 
@@ -77,7 +79,17 @@ class Arrangement:
 
 
 def parts_of(network: Network) -> tuple[Part, ...]:
-    """All poles, then all loads, in the network's order; nets are numbered as in `nets()`."""
+    """All poles, then all loads, in the network's order; nets are numbered as in `nets()`.
+
+    Raises:
+        ValueError: a contact joins a net to itself; such a one has no place in a drawing.
+    """
+    for contact in network.contacts():
+        if contact.common == contact.throw:
+            raise ValueError(
+                f"{contact.relay} pole {contact.pole.number} joins net {contact.throw} to itself; "
+                "leave that contact out"
+            )
     number = {net: k for k, net in enumerate(network.nets())}
 
     def at(net: str | None) -> int | None:
@@ -126,7 +138,9 @@ def arrange_parts(parts: Sequence[Part], nets: int) -> Arrangement:
     size = len(parts) + nets
     steps = min(_STEPS * size, _MOST_WORK // size)
     potential = _potentials(parts, nets)
-    found = [_run(parts, potential, steps, random) for _ in range(_RUNS)]
+    found = [
+        _run(parts, potential, steps, random) for _ in range(max(_RUNS, _MOST_RUNS - size // 4))
+    ]
     layout = min(found, key=lambda layout: layout.cost)
     gaps = _gaps(parts, layout)
     return Arrangement(tuple(layout.columns.column), tuple(layout.rows), gaps, layout.crossings)
@@ -199,7 +213,9 @@ class _Columns:
         for k, net in enumerate(order):
             self.column[net] = k
         self.shapes = [_shape(part, self.column, potential) for part in parts]
-        self.cost = sum(shape.cost for shape in self.shapes) + _GAP * _wide_gaps(self.shapes)
+        gaps = _wide_gaps(self.shapes)
+        self.cost = sum(shape.cost for shape in self.shapes) + _GAP * gaps
+        self.size = _GAP_SIZE * gaps + _COLUMN_SIZE * len(order)
         self.passed = [
             (k, level, mask)
             for k, shape in enumerate(self.shapes)
@@ -262,6 +278,7 @@ class _Layout:
             + _DOWN * down / 2
             + _ROW * height
             + _ORDER * turned
+            + _WIDE * max(0.0, self.columns.size - _SHAPE * _ROW_SIZE * height)
         )
 
 
@@ -332,14 +349,14 @@ def _potentials(parts: Sequence[Part], nets: int) -> list[float]:
 def _run(parts: Sequence[Part], potential: Sequence[float], steps: int, random: Random) -> _Layout:
     """Anneal from nets by potential and parts at random.
 
-    Moves or exchanges columns and parts, cooling from about one crossing to well below a row.
+    Moves or exchanges columns and parts, cooling from half a crossing to well below a row.
     """
     order = sorted(range(len(potential)), key=lambda net: (net > 0, potential[net], net))
     sequence = list(range(len(parts)))
     random.shuffle(sequence)
     best = layout = _Layout(parts, _Columns(parts, order, potential), sequence)
     for step in range(steps):
-        heat = 12.0 * 0.03 ** (step / steps)
+        heat = _HEAT * 0.03 ** (step / steps)
         columns, sequence = layout.columns, list(layout.sequence)
         if len(order) > 2 and random.random() < 0.4:
             order = [0, *_changed(columns.order[1:], random)]
@@ -355,13 +372,21 @@ def _run(parts: Sequence[Part], potential: Sequence[float], steps: int, random: 
 
 
 def _changed(items: Sequence[int], random: Random) -> list[int]:
-    """One item moved elsewhere, or two exchanged."""
+    """One item moved elsewhere, two exchanged, or a run of them moved together."""
     items = list(items)
-    if len(items) < 2:
+    size = len(items)
+    if size < 2:
         return items
-    i, j = random.randrange(len(items)), random.randrange(len(items))
-    if random.random() < 0.5:
+    i = random.randrange(size)
+    near = random.random() < _NEARBY
+    j = (i + random.randint(-3, 3)) % size if near else random.randrange(size)
+    kind = random.random()
+    if kind < 0.45:
         items[i], items[j] = items[j], items[i]
-    else:
+    elif kind < 0.9:
         items.insert(j, items.pop(i))
+    else:
+        run = items[i : i + random.randint(2, 8)]
+        del items[i : i + len(run)]
+        items[j:j] = run
     return items
