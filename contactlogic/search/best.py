@@ -20,6 +20,7 @@ from contactlogic.truth import Target, all_rows
 __all__ = ["Best", "Task", "best_networks"]
 
 _STARTS = 12
+_MORE_FOR_BUDGETS = 2  # poles beyond a network that breaks them, in proving that none keeps them
 _MOST_RELAYS = 12  # above this a window's rows are too many for Python; starts stand as they are
 
 
@@ -118,7 +119,11 @@ def best_networks(
     progress = explore(
         errands,
         proving=Proving(
-            problem, _named(smallest, task, loads) if kept else None, conflicts, at_least
+            problem,
+            _named(smallest, task, loads) if kept else None,
+            conflicts,
+            None if kept else len(smallest.poles) + _MORE_FOR_BUDGETS,
+            at_least,
         ),
         seconds=seconds,
         effort=effort,

@@ -62,7 +62,12 @@ class ExactResult:
 
 
 def prove(
-    problem: Problem, *, known: Network | None = None, conflicts: int | None = None, seed: int = 0
+    problem: Problem,
+    *,
+    known: Network | None = None,
+    conflicts: int | None = None,
+    most: int | None = None,
+    seed: int = 0,
 ) -> Iterator[ExactNews]:
     """Raise the bound until the smallest network is known; a generator for `child.Stream`.
 
@@ -73,12 +78,13 @@ def prove(
     Args:
         known: a correct network; the search ends once nothing smaller is left.
         conflicts: budget of the solver, over all; None for no limit.
+        most: as in `exact`; needed where it may be that no network keeps the budgets.
         seed: order in which cases are asked.
 
     Raises:
         ProofFailed: a network found fails its proof by `contactlogic.check`.
     """
-    yield from _news(problem, known, None, seed, Budget(conflicts), SOLVER)
+    yield from _news(problem, known, most, seed, Budget(conflicts), SOLVER)
 
 
 def exact(

@@ -45,12 +45,14 @@ class Proving:
         problem: the same wants as the errands', without the ladder form.
         known: a correct network; only smaller ones are searched for.
         conflicts: budget when running by effort.
+        most: sizes up to this are tried; None for all below the known network's.
         at_least: bound known beforehand.
     """
 
     problem: Problem
     known: Network | None
     conflicts: int
+    most: int | None = None
     at_least: int = 0
 
 
@@ -160,7 +162,7 @@ class _Run:
 
     def start_proof(self, proving: Proving, conflicts: int | None) -> None:
         name = self._name()
-        arguments = (proving.problem, proving.known, conflicts)
+        arguments = (proving.problem, proving.known, conflicts, proving.most)
         self.proof = (name, Stream(_proof, *arguments, inbox=self.inbox, name=name))
 
     def walkers(self, seed: int, workers: int) -> list[_Walker]:
@@ -292,8 +294,10 @@ class _Run:
             self.proof[1].close()
 
 
-def _proof(problem: Problem, known: Network | None, conflicts: int | None) -> Iterator[ExactNews]:
-    return prove(problem, known=known, conflicts=conflicts)
+def _proof(
+    problem: Problem, known: Network | None, conflicts: int | None, most: int | None
+) -> Iterator[ExactNews]:
+    return prove(problem, known=known, conflicts=conflicts, most=most)
 
 
 def _key(goal: Goal, mesh: Mesh) -> tuple[object, ...]:
