@@ -76,7 +76,7 @@ SLUICE_BRIDGE = Design(
 SLUICE_BOTH = Result(SLUICE_JOB, (SLUICE_DESIGN, SLUICE_BRIDGE), SLUICE_JOB.relays)
 
 SLUICE_BRIDGE_FACTS = Facts(
-    {"LAMP": "FLOOD + UP", "HORN": "UP' DOWN"},
+    {"LAMP": "UP + FLOOD", "HORN": "UP' DOWN"},
     frozenset(("LAMP", "HORN")),
     as_built(SLUICE_BRIDGE.network),
     longest_runs(SLUICE_BRIDGE.network),
