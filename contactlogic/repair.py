@@ -13,22 +13,15 @@ from __future__ import annotations
 
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass, replace
+from heapq import merge
 from typing import Any
 
-from contactlogic.algebra import (
-    Break,
-    Constant,
-    Expression,
-    Name,
-    Parallel,
-    Series,
-    evaluate,
-    to_text,
-)
+from contactlogic.algebra import evaluate, to_text
 from contactlogic.formula import parse
 from contactlogic.job.model import DrivesJob, Job, Load
 from contactlogic.job.sequence import state_text
 from contactlogic.minimize import covers
+from contactlogic.sequence.candidates import contacts_of, formulas, plain_formulas
 from contactlogic.sequence.drives import TableDrives
 from contactlogic.sequence.groups import GroupMotion
 from contactlogic.sequence.motion import Motion, MoveRules, build_motion
@@ -38,18 +31,18 @@ from contactlogic.sequence.space import Watch
 from contactlogic.sequence.steps import Expansion
 from contactlogic.sequence.wants import drive_targets
 from contactlogic.synthesis import wire
-from contactlogic.truth import Target, all_rows, variable
+from contactlogic.truth import Target, all_rows
 
 __all__ = ["MOST_COLUMNS", "NoRepair", "Repair", "cheapest_repair", "repair_json"]
 
 MOST_COLUMNS = 10
 """Most relays and inputs for which a repair is looked for."""
 
-_WIRED = 8  # columns up to which poles are counted on wiring; above, one for each contact
+_WIRED = 5  # columns up to which poles are counted on wiring; above, one for each contact
 _EFFORT = 4  # windows for each wiring
 _CANDIDATES = 3  # of fewest contacts that are wired
-_FORMULAS = 40_000  # most formulas looked at for one relay
-_PROOFS = 400  # most formulas proved for one relay
+_VISITS = 1 << 20  # states looked at for the formulas of one relay, about
+_PROOFS = 40  # most formulas proved for one relay
 _ROUNDS = 30  # of growing constraints
 _COVER_SECONDS = 5.0
 
@@ -158,6 +151,8 @@ class _Case:
         self.watch = watch
         self.n = len(job.columns)
         self.moves = recovery.moves
+        self.formulas = list(formulas(job.columns))
+        self._before: dict[int, list[tuple[int, int]]] = {}
         self.inputs_return = expansion is None or expansion.inputs_return
         self.rules: MoveRules = move_rules(job.columns, job.timing, job.inputs, expansion)
         self.tables = [
@@ -230,26 +225,34 @@ class _Case:
             The drive by state; or, if some states cannot be led home whatever it is, the lowest.
         """
         target = self.fixed[column]
-        before: dict[int, list[tuple[int, int]]] = {}
+        before: dict[int, list[tuple[int, int]]] = {state: [] for state in range(1 << self.n)}
+        self._before = before
         for state in range(1 << self.n):
             free = target.free >> state & 1
             for drive in (0, 1) if free else (target.on >> state & 1,):
                 for onward in self._onward(state, column, drive):
-                    before.setdefault(onward, []).append((state, drive))
-        home = set(self.wanted.ends)
-        choice: dict[int, int] = {}
-        waiting = sorted(home)
+                    before[onward].append((state, drive))
+        choice = self._homeward(None)
+        stranded = [s for s in range(1 << self.n) if s not in choice]
+        return stranded[0] if stranded else choice
+
+    def _homeward(self, table: int | None) -> dict[int, int]:
+        """States that some run leads home, by the drive that does it; any drive if none is given.
+
+        `_before` lists for each state what leads to it in one move, and with which drive.
+        """
+        choice = dict.fromkeys(self.wanted.ends, -1)
+        waiting = sorted(choice)
         while waiting:  # breadth first, so that the way is a shortest one
             following = []
             for here in waiting:
-                for state, drive in before.get(here, ()):
-                    if state not in home:
-                        home.add(state)
-                        choice[state] = drive
-                        following.append(state)
+                for state, drive in self._before[here]:
+                    if state in choice or (table is not None and (table >> state & 1) != drive):
+                        continue
+                    choice[state] = drive
+                    following.append(state)
             waiting = following
-        stranded = [state for state in range(1 << self.n) if state not in home]
-        return stranded[0] if stranded else choice
+        return choice
 
     def _onward(self, state: int, column: int, drive: int) -> Iterator[int]:
         """States after one move, with a drive of one relay chosen."""
@@ -271,15 +274,22 @@ class _Case:
         """Changes of one drive that recover, of the fewest contacts found."""
         target = self.fixed[column]
         found: list[_Candidate] = []
-        proved = 0
-        for contacts, table, formula in _formulas(self.job.columns):
+        looked = proved = 0
+        seen = {self.tables[column]}
+        plain = plain_formulas(target, self.job.columns)
+        for contacts, table, formula in merge(self.formulas, plain, key=lambda one: one[0]):
             if found and contacts > found[0].contacts:
                 break
-            if (table ^ target.on) & ~target.free or table == self.tables[column]:
+            if (table ^ target.on) & ~target.free or table in seen:
+                continue
+            seen.add(table)
+            looked += 1
+            self.watch.tick("looking for a repair", looked)
+            if looked << self.n > _VISITS or proved == _PROOFS:
+                break
+            if len(self._homeward(table)) < 1 << self.n:
                 continue
             proved += 1
-            if proved > _PROOFS:
-                break
             if self.prove(column, table).verdict == "recovers":
                 found.append(_Candidate(contacts, column, to_text(formula), table))
                 if len(found) == _CANDIDATES:
@@ -287,23 +297,22 @@ class _Case:
         return found or self._by_covers(column, choice)
 
     def _by_covers(self, column: int, choice: Mapping[int, int]) -> list[_Candidate]:
-        """Least covers of what is fixed, with more fixed wherever the last one left a trap."""
+        """Least covers of what is fixed, with more fixed wherever states cannot come home."""
         target = self.fixed[column]
         for turn in range(_ROUNDS):
             self.watch.tick("looking for a repair", turn)
             cover = covers(target, seconds=_COVER_SECONDS)[0]
             text = cover.to_text(self.job.columns)
             table = evaluate(parse(text), self.job.columns)
-            found = self.prove(column, table)
-            if found.verdict == "recovers":
-                return [_Candidate(cover.literals, column, text, table)]
-            bad = set(found.hunting or ())
-            for trap in found.traps:
-                if not trap.wanted:
-                    bad.add(trap.example)
-                    bad.update(trap.run)
-            fresh = [s for s in sorted(bad) if target.free >> s & 1 and s in choice]
-            fresh = fresh or [s for s in sorted(choice) if target.free >> s & 1]
+            home = self._homeward(table)
+            bad = [state for state in choice if state not in home]
+            if not bad:
+                found = self.prove(column, table)
+                if found.verdict == "recovers":
+                    return [_Candidate(cover.literals, column, text, table)]
+                bad = list(found.hunting or ())
+            loose = [s for s in sorted(choice) if target.free >> s & 1 and choice[s] >= 0]
+            fresh = [s for s in loose if s in bad] or loose
             if not fresh:
                 break
             for state in fresh:
@@ -323,7 +332,7 @@ class _Case:
                 f"{self.job.columns[column]}, state {state_text(state, self.n)} cannot be led to "
                 f"{kept}{others}"
             )
-        return f"no change of one drive alone was found that leads every state to {kept}"
+        return f"no change of one drive alone was found that brings every run to {kept}"
 
     def poles(self, changed: Mapping[int, _Candidate]) -> int:
         """Poles of all drives as one network, with the changes made."""
@@ -336,7 +345,7 @@ class _Case:
                 table = changed[i].table
                 contacts += changed[i].contacts
             else:
-                contacts += _contacts(self.job.drives[name])
+                contacts += contacts_of(self.job.drives[name])
             loads.append(Load(name, Target(self.n, table), "coil"))
         if self.n > _WIRED:
             return contacts
@@ -351,64 +360,3 @@ class _Case:
         )
         result = wire(asked, form="bridge", effort=_EFFORT, workers=1)
         return len(result.designs[0].network.poles)
-
-
-def _contacts(expression: Expression) -> int:
-    """Contacts of a formula as it is written."""
-    if isinstance(expression, Name):
-        return 1
-    if isinstance(expression, Constant):
-        return 0
-    if isinstance(expression, Break):
-        return _contacts(expression.part)
-    return sum(_contacts(part) for part in expression.parts)
-
-
-def _formulas(names: Sequence[str]) -> Iterator[tuple[int, int, Expression]]:
-    """Series-parallel formulas by rising number of contacts, each function once.
-
-    Yields:
-        Contacts, truth table, formula.
-    """
-    n = len(names)
-    full = all_rows(n)
-    seen: set[int] = {0, full}
-    yield 0, 0, Constant(False)
-    yield 0, full, Constant(True)
-    levels: list[list[tuple[int, Expression]]] = [[], []]
-    for i, name in enumerate(names):
-        table = variable(n, i)
-        contacts: tuple[tuple[int, Expression], ...] = (
-            (table, Name(name)),
-            (full & ~table, Break(Name(name))),
-        )
-        for value, formula in contacts:
-            seen.add(value)
-            levels[1].append((value, formula))
-            yield 1, value, formula
-    looked = 0
-    for size in range(2, 2 * n):
-        levels.append([])
-        for left in range(size // 2, 0, -1):
-            for one, first in levels[left]:
-                for two, second in levels[size - left]:
-                    for kind, table in ((Series, one & two), (Parallel, one | two)):
-                        looked += 1
-                        if table in seen:
-                            continue
-                        if looked > _FORMULAS:
-                            return
-                        seen.add(table)
-                        formula = _joined(kind, first, second)
-                        levels[size].append((table, formula))
-                        yield size, table, formula
-
-
-def _joined(
-    kind: type[Series] | type[Parallel], first: Expression, second: Expression
-) -> Expression:
-    """Two parts in one series or parallel, without one inside another of its kind."""
-    parts: list[Expression] = []
-    for part in (first, second):
-        parts += part.parts if isinstance(part, kind) else [part]
-    return kind(tuple(parts))

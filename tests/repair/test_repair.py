@@ -14,9 +14,11 @@ from contactlogic.algebra import Break, Constant, Name, Parallel, Series, evalua
 from contactlogic.formula import parse
 from contactlogic.job.model import DrivesJob
 from contactlogic.job.sequence import Row, SequenceTable, Timing
+from contactlogic.sequence import candidates
 from contactlogic.sequence.drives import formula_drive
 from contactlogic.sequence.memory import resolve
 from contactlogic.sequence.prove import prove_drives
+from contactlogic.truth import Target
 
 RING = {"A": "D C'", "B": "A D'", "C": "B A'", "D": "C B'"}
 SLOW = Timing(slow_release=("A", "B", "C", "D"))
@@ -171,3 +173,27 @@ def test_the_repair_as_json() -> None:
     }
     assert repair.repair_json(replace(made, wired=False))["poles_are"] == "at most"
     assert repair.repair_json(repair.NoRepair("too many")) == {"relay": None, "why": "too many"}
+
+
+def test_formulas_come_by_contacts_and_do_what_they_say() -> None:
+    names = ("A", "B", "C")
+    found = list(candidates.formulas(names))
+    assert [contacts for contacts, _, _ in found] == sorted(contacts for contacts, _, _ in found)
+    assert len({table for _, table, _ in found}) == len(found)
+    for contacts, table, formula in found:
+        assert evaluate(formula, names) == table
+        assert candidates.contacts_of(formula) == contacts
+    # all functions of two relays but the two that need each relay twice take at most 2 contacts
+    two = [contacts for contacts, _, _ in candidates.formulas(("A", "B"))]
+    assert sum(contacts <= 2 for contacts in two) == 14
+
+
+def test_plain_formulas_keep_the_target() -> None:
+    names = ("A", "B", "C")
+    target = Target(3, on=0b0000_0010, free=0b1100_0000)  # on in A alone, free in B C and A B C
+    found = candidates.plain_formulas(target, names)
+    for contacts, table, formula in found:
+        assert evaluate(formula, names) == table
+        assert candidates.contacts_of(formula) == contacts
+    assert parse("A B' C'") in [formula for _, _, formula in found]
+    assert parse("A B C'") not in [formula for _, _, formula in found]
