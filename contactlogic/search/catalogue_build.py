@@ -24,9 +24,10 @@ from itertools import combinations, count, product
 from pathlib import Path
 from time import monotonic
 
+from contactlogic.errors import ProofFailed
 from contactlogic.ladder.build import Edge, lay, pair
 from contactlogic.ladder.recognise import series_parallel
-from contactlogic.ladder.small import least_trees, size_table
+from contactlogic.ladder.small import least_trees
 from contactlogic.ladder.synthesise import LadderTask, best_ladder
 from contactlogic.network import Network
 from contactlogic.search.catalogue import (
@@ -43,14 +44,16 @@ from contactlogic.search.catalogue import (
 from contactlogic.search.cheapest import Wish, cheapest
 from contactlogic.search.classes import RELAYS, classes
 from contactlogic.search.encoding import Ends
+from contactlogic.search.goal import Goal
 from contactlogic.search.mesh import SUPPLY, Mesh, from_network, to_network
+from contactlogic.search.tallies import least_tallies
 from contactlogic.truth import Target, cofactor, support
 
 Found = dict[tuple[Form, int], Entry]
 
 _NAMES = tuple("ABCD")
 _SUPPLY, _LOAD = "L", "X"
-_PASSES = (40_000, 600_000)  # conflicts on one number of poles, for classes still open
+_PASSES = (20_000, 400_000)  # conflicts on one number of poles, for classes still open
 _SECONDS = 600.0  # an upper limit that the ladders of four relays never come near
 
 
@@ -80,15 +83,6 @@ def _demands(table: int, form: Form, found: Found) -> dict[tuple[int, ...], int]
     }
 
 
-def _tree_sizes(table: int) -> dict[tuple[int, ...], int]:
-    """For sets of relays, the contacts that every ladder has on them together."""
-    sizes = size_table().size
-    every = tuple(range(RELAYS))
-    return {every: int(sizes[table])} | {
-        relays: max(int(sizes[rest]) for rest in left) for relays, left in _cofactors(table)
-    }
-
-
 # -- one search
 
 
@@ -104,12 +98,15 @@ def search(table: int, form: Form, found: Found, conflicts: int) -> Entry:
     """
     earlier = found.get((form, table))
     bound = 0 if earlier is None else earlier.at_least
-    contacts: dict[tuple[int, ...], int] = {}
+    contacts: dict[str, int] = {}
     if form == "ladder":
         bound = max(bound, found["bridge", table].at_least)
-        contacts = _tree_sizes(table)
+        contacts = least_tallies(table)
     elif form == "bridge":
-        contacts = _demands(table, "contacts", found)
+        contacts = {
+            "".join("a" if i in relays else "o" for i in range(RELAYS)): need
+            for relays, need in _demands(table, "contacts", found).items()
+        }
     wish = Wish(
         table,
         ladder=form == "ladder",
@@ -122,11 +119,10 @@ def search(table: int, form: Form, found: Found, conflicts: int) -> Entry:
     best = min(known, key=lambda mesh: order(form, mesh), default=None)
     mesh, bound = _climb(wish, bound, best)
     if best is None and mesh is None:
-        best = _ladder(table)  # the solver does not find one soon, or wanders far above the least
-        mesh, bound = _climb(wish, bound, best)
-        if mesh is None:  # that ladder has the fewest poles so far: its ties may be bettered
-            level = len(best.poles)
-            mesh = cheapest(replace(wish, at_least=level), most=level).mesh
+        best = _ladder(table)  # the solver does not find one soon
+    elif mesh is None and earlier is not None and wish.ladder:
+        level = len(earlier.mesh.poles)  # not from the solver: its ties may be bettered
+        mesh = cheapest(replace(wish, at_least=level), most=level).mesh
     mesh = None if mesh is None else _numbered(_paired(mesh) if wish.singly else mesh)
     if best is None or (mesh is not None and order(form, mesh) < order(form, best)):
         best = mesh
@@ -174,9 +170,9 @@ def _ladder(table: int) -> Mesh:
     return _numbered(from_network(best_ladder(task, seconds=_SECONDS).network))
 
 
-def _mesh(edges: Iterable[Edge]) -> Mesh:
-    """Contacts between named nets in as few poles as the nets allow."""
-    network = Network(_NAMES, _SUPPLY, {_LOAD: _LOAD}, pair(edges, _NAMES))
+def _mesh(edges: Iterable[Edge], fed: str = _LOAD) -> Mesh:
+    """Contacts between named nets in as few poles as the nets allow; the load is on net `fed`."""
+    network = Network(_NAMES, _SUPPLY, {_LOAD: fed}, pair(edges, _NAMES))
     return _numbered(from_network(network))
 
 
@@ -195,10 +191,10 @@ def _numbered(mesh: Mesh) -> Mesh:
 
 def _paired(mesh: Mesh) -> Mesh:
     """The same contacts in as few poles as their nets allow."""
-    return _mesh(
-        Edge(contact.relay, contact.make, contact.common, contact.throw)
-        for contact in to_network(mesh, _NAMES, [_LOAD]).contacts()
-    )
+    network = to_network(mesh, _NAMES, [_LOAD])
+    fed = network.loads[_LOAD]
+    assert fed is not None
+    return _mesh((Edge(c.relay, c.make, c.common, c.throw) for c in network.contacts()), fed)
 
 
 # -- the whole table
@@ -210,6 +206,9 @@ def build(results: Path, workers: int, tell: Callable[[str], None]) -> Found:
     start = monotonic()
 
     def keep(table: int, form: Form, entry: Entry) -> None:
+        goal = Goal(RELAYS, (Target(RELAYS, table),), ladder=form == "ladder")
+        if not goal.accepts(entry.mesh):
+            raise ProofFailed(f"the {form} found for {table:04x} is not right")
         found[form, table] = entry
         with results.open("a", encoding="ascii") as file:
             file.writelines(line + "\n" for line in to_lines({(form, table): entry}))

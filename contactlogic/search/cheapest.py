@@ -13,7 +13,8 @@ from supply to load can be left out of a ladder, so nothing is lost by asking th
 `strike_waste` stays sound: each of its steps contracts or deletes contacts, which keeps treewidth,
 or (two changeovers on one common) splits a net of four contacts in two, and a subdivision of four
 nets joined each to each survives the joining of any two nets within its paths, so splitting makes
-none.  A ladder has at least as many contacts as the least series-parallel tree.
+none.  A ladder has at least as many contacts
+of every kind as `tallies` says.
 """
 
 from __future__ import annotations
@@ -37,14 +38,18 @@ from contactlogic.search.problem import (
     rows_of_grouping,
 )
 from contactlogic.search.rows import Rows, merged
-from contactlogic.search.solver import WINDOW_SOLVER, Session, Status
+from contactlogic.search.solver import SOLVER, WINDOW_SOLVER, Session, Status
 from contactlogic.search.symmetry import break_symmetry, order_throws, strike_waste
+from contactlogic.search.tallies import MOST_ON_A_POLE
 from contactlogic.truth import Target
 
 __all__ = ["Cheapest", "Wish", "cheapest"]
 
 _SLICE = 2000  # conflicts of one call; equal slices make a run reproducible
 _TIE_SLICES = 2  # slices for one question about ties
+_TALLIES = 24  # weightings written as clauses
+_LOOSE = 4  # contacts left to choice from which a weighting is not worth its clauses
+_SOON = 10  # slices after which a question goes to the solver for long proofs
 
 
 @dataclass(frozen=True)
@@ -58,7 +63,7 @@ class Wish:
         ties: whether to look for the least busy relay, fewest springs and nets (not if `singly`).
         at_least: poles (contacts) proved to be needed already.
         poles: for sets of relays, least poles (contacts, if `singly`) on these relays together.
-        contacts: for sets of relays, least contacts on these relays together.
+        contacts: for weightings (see `tallies`), least tally of contacts.
         conflicts: most conflicts spent on one number of poles; None for no limit.
     """
 
@@ -68,7 +73,7 @@ class Wish:
     ties: bool = True
     at_least: int = 0
     poles: Mapping[tuple[int, ...], int] = field(default_factory=dict)
-    contacts: Mapping[tuple[int, ...], int] = field(default_factory=dict)
+    contacts: Mapping[str, int] = field(default_factory=dict)
     conflicts: int | None = None
 
 
@@ -121,9 +126,14 @@ class _Level:
         use = Counter(kind.relay for kind in kinds)
         if any(sum(use[i] for i in relays) < need for relays, need in self.wish.poles.items()):
             return False
-        return self.wish.singly or all(
-            2 * sum(use[i] for i in relays) >= need for relays, need in self.wish.contacts.items()
-        )
+        return all(slack >= 0 for _, slack in self.slack(use))
+
+    def slack(self, use: Mapping[int, int]) -> list[tuple[str, int]]:
+        """For each weighting how many of the contacts it counts could be left out."""
+        return [
+            (word, sum(MOST_ON_A_POLE[word[i]] * use[i] for i in range(RELAYS)) - need)
+            for word, need in self.wish.contacts.items()
+        ]
 
     def run(self) -> tuple[Mesh | None, bool]:
         """The cheapest mesh found, and whether every case is refuted."""
@@ -188,6 +198,7 @@ class _Case:
         self.busiest = max(sum(k.relay == i for k in kinds) for i in range(RELAYS))
         self.session: Session | None = None
         self.closed = False
+        self.slices = 0
 
     def _open(self) -> Session:
         ends = sum(3 if kind.form == "C" else 2 for kind in self.kinds)
@@ -202,15 +213,23 @@ class _Case:
             double = [_double(encoding, pole) for pole in range(len(self.kinds))]
             self.doubles = _counter(encoding, double)
             self.used = _net_marks(encoding)
-            for relays, need in self.level.wish.contacts.items():
-                own = [
-                    d for d, kind in zip(double, self.kinds, strict=True) if kind.relay in relays
-                ]
-                if need > len(own):
-                    encoding.clauses.append([_counter(encoding, own)[need - len(own) - 1]])
+            self._keep_tallies(encoding)
         if self.level.wish.ladder:
             _series_parallel(encoding)
         return Session(encoding.clauses, solver=WINDOW_SOLVER)
+
+    def _keep_tallies(self, encoding: Encoding) -> None:
+        """Contacts that tallies ask for, those first that leave the least choice."""
+        use = Counter(kind.relay for kind in self.kinds)
+        tight = sorted((slack, word) for word, slack in self.level.slack(use) if slack < _LOOSE)
+        for slack, word in tight[:_TALLIES]:
+            missing = []
+            for pole, kind in enumerate(self.kinds):
+                letter = word[kind.relay]
+                missing += [encoding.make[pole].none] if letter in "am" else []
+                missing += [encoding.break_[pole].none] if letter in "ab" else []
+            if slack < len(missing):
+                encoding.clauses.append([-_counter(encoding, missing)[slack]])
 
     def at_most(self, springs: int, nets: int | None) -> list[int]:
         """Assumptions that keep to so many springs and nets; two springs a pole are the least."""
@@ -228,6 +247,10 @@ class _Case:
             self.session = self._open()
         nothing = Mesh((), (1,))
         for _ in range(slices):
+            if self.slices == _SOON:
+                self.session.close()
+                self.session = Session(self.encoding.clauses, solver=SOLVER)
+            self.slices += 1
             before = self.session.conflicts
             status = self.session.solve(limits, conflicts=_SLICE)
             self.level.spent += self.session.conflicts - before

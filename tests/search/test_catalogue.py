@@ -22,8 +22,15 @@ from contactlogic.search.catalogue import (
     size,
     to_lines,
 )
+from contactlogic.search.catalogue_build import distribution, search
 from contactlogic.search.classes import classes
-from contactlogic.search.mesh import to_network
+from contactlogic.search.encoding import Encoding, Kind
+from contactlogic.search.exact import exact
+from contactlogic.search.mesh import Mesh, to_network
+from contactlogic.search.problem import Problem, groupings, rows_of_grouping
+from contactlogic.search.rows import merged
+from contactlogic.search.solver import Session
+from contactlogic.search.symmetry import break_symmetry
 from contactlogic.truth import Target
 
 RELAYS = ("A", "B", "C", "D")
@@ -91,6 +98,83 @@ def test_bounds_agree_with_each_other():
         assert bridge.at_least <= len(contacts.mesh.poles)
         for form, entry in zip(FORMS, (bridge, ladder, contacts), strict=True):
             assert entry.proved == (size(form, entry.mesh) == entry.at_least)
+
+
+def every_network(n, table, poles):
+    """All networks of so many poles for a load, redrawings left out, one solution at a time."""
+    problem = Problem(RELAYS[:n], {"X": Target(n, table)})
+    encoding = Encoding([[Kind(i) for i in range(n)]] * poles, 2, (3 * poles - 2) // 2)
+    break_symmetry(encoding)
+    for row in merged(rows_of_grouping(problem, next(groupings(problem)))):
+        encoding.add_row(row)
+    choices = [literal for kinds in encoding.kind for literal in kinds.values()]
+    for side in (*encoding.common, *(side.at for side in (*encoding.make, *encoding.break_))):
+        choices += side
+    with Session(encoding.clauses, solver="minisat22") as session:
+        while session.solve() == "sat":
+            model = session.model()
+            yield to_network(Mesh(encoding.decode(model), (1,)), RELAYS[:n], ["X"])
+            session.add([[-literal for literal in choices if model[literal - 1] > 0]])
+
+
+@pytest.mark.parametrize(
+    "table", [0x16, pytest.param(0x17, marks=pytest.mark.slow), 0x1E, 0x69, 0x6B]
+)
+def test_no_ladder_takes_a_pole_less_where_a_bridge_does(table):
+    ladder = least_ladder(Target(3, table))
+    poles = len(ladder.mesh.poles)
+    assert ladder.proved
+    assert len(least_bridge(Target(3, table)).mesh.poles) == poles - 1
+    count = 0
+    for network in every_network(3, table, poles - 1):
+        count += 1
+        edges = [(c.common, c.throw) for c in network.contacts()]
+        assert not oracles.confluent(edges, network.supply, network.loads["X"])
+    assert count  # the bridges
+
+
+@pytest.mark.parametrize("form", ["bridge", "contacts"])
+def test_a_second_solver_refutes_one_less(form):
+    # Of the classes of four relays a few with easy proofs; the demands of cofactors play no part.
+    for table in (*classes().leaders[2:22], 0x0001, 0x07F2, 0x018B, 0x19F1, 0x7FFE):
+        entry = entries()[form, table]
+        if not entry.proved or entry.at_least > 6:
+            continue
+        problem = Problem(
+            RELAYS,
+            {"X": Target(4, table)},
+            objective="contacts" if form == "contacts" else "poles",
+        )
+        refuted = exact(problem, most=entry.at_least - 1, solver="glucose4")
+        assert (refuted.network, refuted.at_least) == (None, entry.at_least)
+
+
+@pytest.mark.parametrize(
+    "form",
+    ["bridge", "contacts", pytest.param("ladder", marks=pytest.mark.slow)],  # makes its tallies
+)
+def test_the_build_finds_the_shipped_entries_again(form):
+    for table in (0x1717, 0x6969, 0x07F2):
+        shipped = entries()[form, table]
+        known = {key: entry for key, entry in entries().items() if _relays(key[1]) < 4}
+        known["bridge", table] = entries()["bridge", table]
+        known.pop((form, table), None)
+        found = search(table, form, known, 20_000)
+        assert (size(form, found.mesh), found.at_least) == (
+            size(form, shipped.mesh),
+            shipped.at_least,
+        )
+        assert oracles.behaviour(network_of(found.mesh)) == {"X": table}
+
+
+def _relays(table):
+    return sum(_depends(table, i) for i in range(4))
+
+
+def test_the_distribution_counts_every_function():
+    rows = [line.split("|")[1:-1] for line in distribution(entries()).splitlines()[2:-1]]
+    for column in (1, 2, 3):
+        assert sum(int(row[column].strip() or 0) for row in rows) == 65536
 
 
 @pytest.mark.parametrize(("n", "most"), [(1, 1), (2, 4), (3, 8), (4, 13)])
