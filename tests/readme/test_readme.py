@@ -96,7 +96,7 @@ def test_examples_begin_with_a_comment_and_can_be_wired(
 ) -> None:
     assert path.read_text(encoding="utf-8").startswith("# ")
     monkeypatch.chdir(tmp_path)
-    ran = CliRunner().invoke(app, ["wire", str(path), "--effort", "3"])
+    ran = CliRunner().invoke(app, ["wire", str(path), "--effort", "8"])
     assert ran.exit_code == 0, ran.stderr
     assert "\nproved: all " in ran.stdout
 
