@@ -30,7 +30,7 @@ class ExactNews:
 
     Args:
         at_least: poles (contacts, for that objective) that every network needs; proved.
-        network: a network smaller than the one known, proved row by row; it has `at_least`.
+        network: a network smaller than the one known, checked row by row; it has `at_least`.
         finished: whether the network found, or else the one known, is proved to be smallest (or,
             if not `feasible`, that there is none).
         feasible: False if proved that no network at all keeps the limits.
@@ -47,7 +47,7 @@ class ExactResult:
     """Outcome of an exact search.
 
     Args:
-        network: a network of the least size reached, proved row by row; None if none was found.
+        network: a network of the least size reached, checked row by row; None if none was found.
         at_least: poles (contacts, for that objective) that every network needs; proved.
         proven: whether the network has no more than that.
         feasible: False if proved that no network at all keeps the limits.
@@ -82,7 +82,7 @@ def prove(
         seed: order in which cases are asked.
 
     Raises:
-        ProofFailed: a network found fails its proof by `contactlogic.check`.
+        ProofFailed: a network found does not do what was asked.
     """
     yield from _news(problem, known, most, seed, Budget(conflicts), SOLVER)
 
@@ -110,7 +110,7 @@ def exact(
         solver: name of the python-sat solver.
 
     Raises:
-        ProofFailed: a network found fails its proof by `contactlogic.check`.
+        ProofFailed: a network found does not do what was asked.
     """
     budget = Budget(conflicts, None if seconds is None else monotonic() + seconds)
     news = ExactNews(0)

@@ -12,7 +12,7 @@ from contactlogic.network import Network, Pole
 from contactlogic.search.encoding import Ends
 from contactlogic.truth import all_rows, literal
 
-__all__ = ["Mesh", "from_network", "live_rows", "to_network", "trim"]
+__all__ = ["SUPPLY", "Mesh", "from_network", "live_rows", "to_network", "trim"]
 
 SUPPLY = 0
 
