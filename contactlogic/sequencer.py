@@ -16,7 +16,7 @@ from contactlogic.job.model import Job, Load, LoadFacts, LoadKind, PatternJob, S
 from contactlogic.job.sequence import SequenceTable, Timing, state_text
 from contactlogic.network import folded
 from contactlogic.sequence.memory import resolve
-from contactlogic.sequence.pattern import choose_relays
+from contactlogic.sequence.pattern import sequence_of
 from contactlogic.sequence.prove import network_motion, prove_network
 from contactlogic.sequence.recovery import Recovery
 from contactlogic.sequence.selfstart import Blemishes, Recovers, homing, shared_coils
@@ -91,8 +91,7 @@ def _listed(job: SequenceJob | PatternJob) -> tuple[SequenceJob, tuple[str, ...]
     """The sequence of a pattern, with what was chosen; a sequence as it is."""
     if isinstance(job, SequenceJob):
         return job, ()
-    choice = choose_relays(job.pattern)
-    made = SequenceJob(job.title, choice.table, job.supply, job.facts, job.limits, job.file)
+    made, choice = sequence_of(job)
     return made, choice.notes
 
 
