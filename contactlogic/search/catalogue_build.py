@@ -47,13 +47,15 @@ from contactlogic.search.encoding import Ends
 from contactlogic.search.goal import Goal
 from contactlogic.search.mesh import SUPPLY, Mesh, from_network, to_network
 from contactlogic.search.tallies import least_tallies
+from contactlogic.search.windows import wander
 from contactlogic.truth import Target, cofactor, support
 
 Found = dict[tuple[Form, int], Entry]
 
 _NAMES = tuple("ABCD")
 _SUPPLY, _LOAD = "L", "X"
-_PASSES = (20_000, 400_000)  # conflicts on one number of poles, for classes still open
+_PASSES = (20_000, 150_000)  # conflicts on one number of poles, for classes still open
+_WINDOWS = 60  # tried for a class that is not proved in the first pass
 _SECONDS = 600.0  # an upper limit that the ladders of four relays never come near
 
 
@@ -115,13 +117,16 @@ def search(table: int, form: Form, found: Found, conflicts: int) -> Entry:
         contacts=contacts,
         conflicts=None if form == "bridge" else conflicts,
     )
-    known = [earlier.mesh] if earlier is not None else list(_known(table, form, found))
+    if earlier is None:
+        known = list(_known(table, form, found))
+    else:
+        known = [earlier.mesh, _walked(wish, earlier)]
     best = min(known, key=lambda mesh: order(form, mesh), default=None)
     mesh, bound = _climb(wish, bound, best)
     if best is None and mesh is None:
         best = _ladder(table)  # the solver does not find one soon
-    elif mesh is None and earlier is not None and wish.ladder:
-        level = len(earlier.mesh.poles)  # not from the solver: its ties may be bettered
+    elif best is not None and mesh is None and earlier is not None and wish.ladder:
+        level = len(best.poles)  # not from the solver: its ties may be bettered
         mesh = cheapest(replace(wish, at_least=level), most=level).mesh
     mesh = None if mesh is None else _numbered(_paired(mesh) if wish.singly else mesh)
     if best is None or (mesh is not None and order(form, mesh) < order(form, best)):
@@ -162,6 +167,31 @@ def _known(table: int, form: Form, found: Found) -> Iterator[Mesh]:
             yield _mesh(edges)
     elif series_parallel(to_network(bridge, _NAMES, [_LOAD])):
         yield bridge
+
+
+def _walked(wish: Wish, entry: Entry) -> Mesh:
+    """The best network on a walk through windows from an entry that is not proved."""
+    goal = Goal(
+        RELAYS,
+        (Target(RELAYS, wish.table),),
+        ladder=wish.ladder,
+        separate=dict.fromkeys(range(RELAYS), (99, 99)) if wish.singly else {},
+    )
+    start = _singles(entry.mesh) if wish.singly else entry.mesh
+    for found in wander([start], goal, wish.table, _WINDOWS, entry.at_least):
+        start = found.best or start
+    return _numbered(_paired(start) if wish.singly else start)
+
+
+def _singles(mesh: Mesh) -> Mesh:
+    """The same makes and breaks, each a pole of its own."""
+    throws = [
+        half
+        for pole in mesh.poles
+        for half in (pole._replace(make=None), pole._replace(break_=None))
+        if half.make is not None or half.break_ is not None
+    ]
+    return Mesh(tuple(throws), mesh.feeds)
 
 
 def _ladder(table: int) -> Mesh:
@@ -239,6 +269,10 @@ def build(results: Path, workers: int, tell: Callable[[str], None]) -> Found:
                     f"{monotonic() - start:6.0f} s  {form} {k}/{len(todo)}  {table:04x}: "
                     f"{size(form, entry.mesh)}, at least {entry.at_least}"
                 )
+    for table in classes().leaders:  # fewest contacts may go with fewest poles: fewer springs
+        bridge, contacts = found["bridge", table], found["contacts", table]
+        if order("bridge", contacts.mesh) < order("bridge", bridge.mesh):
+            found["bridge", table] = replace(bridge, mesh=contacts.mesh)
     return found
 
 
