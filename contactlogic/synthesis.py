@@ -343,7 +343,8 @@ def _over_budget(job: Job, best: Best) -> LimitError:
     if short:
         name = short[0]
         most, least = job.limits.poles[name], use[name].poles
-        what = f"{name} may use {most} poles; the least found for it is {least}"
+        poles = "pole" if most == 1 else "poles"
+        what = f"{name} may use {most} {poles}; the least found for it is {least}"
     else:
         name, have = next(
             (name, have)

@@ -109,7 +109,7 @@ def test_a_budget_that_cannot_be_met_says_the_least() -> None:
     limits = Limits(poles=dict.fromkeys("ABC", 1))
     with pytest.raises(LimitError) as caught:
         contactlogic.wire(job(3, most, limits=limits), effort=10)
-    assert "may use 1 poles; the least found for it is" in str(caught.value)
+    assert "may use 1 pole; the least found for it is" in str(caught.value)
     assert "proved: no network keeps all budgets" in str(caught.value)
     assert "--repeaters" in str(caught.value)
 
