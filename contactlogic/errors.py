@@ -8,6 +8,7 @@
     │   │   ├── FormulaError       switching algebra that does not parse or names no relay
     │   │   └── LimitError         too many inputs, a pole budget that cannot be met
     │   ├── DesignFileError        a design.json that does not keep the contract
+    │   ├── PartsError             a parts list that cannot be used, or does not hold what is needed
     │   └── OutputError            a folder that cannot or must not be written
     ├── NotALadder                 a network that cannot be drawn as a ladder
     ├── RenderError                the renderer failed
@@ -34,6 +35,7 @@ __all__ = [
     "LimitError",
     "NotALadder",
     "OutputError",
+    "PartsError",
     "Place",
     "ProofFailed",
     "RenderError",
@@ -139,6 +141,10 @@ class LimitError(JobError):
 
 class DesignFileError(InputError):
     """A design file that does not keep the `contactlogic/design/1` contract."""
+
+
+class PartsError(InputError):
+    """A parts list that cannot be used, or from which what is needed cannot be bought."""
 
 
 class OutputError(InputError):

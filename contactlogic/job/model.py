@@ -60,10 +60,11 @@ class LoadFacts:
 
 @dataclass(frozen=True)
 class Supply:
-    """Labels of the two rails, None where not given."""
+    """Labels of the two rails, and the voltage that coils are rated for; None where not given."""
 
     feed: str | None = None
     return_: str | None = None
+    coil_volts: float | None = None
 
 
 @dataclass(frozen=True)

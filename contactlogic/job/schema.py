@@ -64,6 +64,7 @@ _EXPECTED = {
     "supply": "a section [supply]",
     "supply.feed": 'a label such as "+24 V"',
     "supply.return": 'a label such as "0 V"',
+    "supply.coil_volts": "a number above 0, such as 24",
     "loads": "a section [loads]",
     "loads.*": '{ kind = "lamp", amps = 0.2 }',
     "loads.*.kind": '"lamp", "horn", "valve", "coil", "motor" or "other"',
@@ -252,6 +253,7 @@ def _model() -> type[BaseModel]:
     class Supply(Strict):
         feed: str | None = None
         return_: Annotated[str | None, Field(alias="return")] = None
+        coil_volts: Annotated[float, Field(gt=0, allow_inf_nan=False)] | None = None
 
     class LoadFacts(Strict):
         kind: LoadKind | None = None

@@ -25,7 +25,7 @@ def title_of(data: Any, file: Path) -> str:
 
 
 def supply_of(data: Any) -> Supply:
-    return Supply(data.supply.feed, data.supply.return_)
+    return Supply(data.supply.feed, data.supply.return_, data.supply.coil_volts)
 
 
 def formula_places(

@@ -20,12 +20,14 @@ from contactlogic.job.textfile import read_bytes, read_text
 from contactlogic.naming import check_names, did_you_mean, listed, shortened
 from contactlogic.truth import MAX_INPUTS
 
-__all__ = ["SUFFIXES", "read_sheet"]
+__all__ = ["SUFFIXES", "read_cells", "read_sheet"]
 
 SUFFIXES = (".csv", ".xlsx")
 _MOST_COLUMNS = MOST_LOADS + 64  # room to say by how much there are too many relays
 _MOST_CELLS = 3_000_000
 _MOST_UNPACKED = 256 << 20  # bytes; a full table of 16 inputs and 8 loads is a third of this
+
+_MARKS = "0, 1, - or a name"  # what a cell of a truth table may hold
 
 _Line = tuple[str, list[str]]  # what the user calls the line, its cells
 
@@ -39,14 +41,7 @@ def read_sheet(path: Path, loads: Sequence[str], shown: str) -> Grid:
         shown: the file's name for messages.
     """
     place = Place(file=shown)
-    suffix = path.suffix.lower()
-    if suffix not in SUFFIXES:
-        raise JobFileError(
-            f"a table file cannot end in {suffix}" if suffix else "a table file needs an ending",
-            place=place,
-            expected="a file ending in .csv or .xlsx",
-        )
-    lines = _filled(_csv(path, place) if suffix == ".csv" else _xlsx(path, place), place)
+    lines = read_cells(path, shown, _MARKS)
     if not lines:
         raise TableError("the table is empty", place=place, expected="a header of names, then rows")
     label, header = lines[0]
@@ -54,7 +49,7 @@ def read_sheet(path: Path, loads: Sequence[str], shown: str) -> Grid:
     order = [header.index(name) for name in (*relays, *fed)]
     rows = []
     for label, cells in lines[1:]:
-        if len(cells) > len(header) or (len(cells) < len(header) and suffix == ".csv"):
+        if len(cells) > len(header) or (len(cells) < len(header) and path.suffix.lower() == ".csv"):
             raise TableError(
                 f"the row has {len(cells)} cell{'' if len(cells) == 1 else 's'}",
                 place=Place(file=shown, row=label, line=" ".join(cells)),
@@ -64,6 +59,28 @@ def read_sheet(path: Path, loads: Sequence[str], shown: str) -> Grid:
         chosen = tuple(cells[k] for k in order)
         rows.append(GridRow(chosen, label, " ".join(chosen), of_sheet=True))
     return Grid(relays, fed, tuple(rows), place)
+
+
+def read_cells(path: Path, shown: str, expected: str) -> list[tuple[str, list[str]]]:
+    """The lines of a CSV file or of a workbook's first sheet that hold something, as text.
+
+    Args:
+        path: the file.
+        shown: the file's name for messages.
+        expected: what a cell may hold, for a cell that holds a formula instead.
+
+    Returns what the user calls each line ("line 4", "sheet Table, row 4") with its cells.
+    """
+    place = Place(file=shown)
+    suffix = path.suffix.lower()
+    if suffix not in SUFFIXES:
+        raise JobFileError(
+            f"a table file cannot end in {suffix}" if suffix else "a table file needs an ending",
+            place=place,
+            expected="a file ending in .csv or .xlsx",
+        )
+    lines = _csv(path, place) if suffix == ".csv" else _xlsx(path, place, expected)
+    return _filled(lines, place)
 
 
 def _filled(lines: Iterator[_Line], place: Place) -> list[_Line]:
@@ -133,7 +150,7 @@ def _csv(path: Path, place: Place) -> Iterator[_Line]:
             ) from None
 
 
-def _xlsx(path: Path, place: Place) -> Iterator[_Line]:
+def _xlsx(path: Path, place: Place, expected: str) -> Iterator[_Line]:
     data = read_bytes(path, place)
     try:
         with zipfile.ZipFile(io.BytesIO(data)) as packed:
@@ -146,7 +163,7 @@ def _xlsx(path: Path, place: Place) -> Iterator[_Line]:
             )
         with warnings.catch_warnings():  # of features of workbooks that do not matter here
             warnings.simplefilter("ignore")
-            yield from _first_sheet(data, place)
+            yield from _first_sheet(data, place, expected)
     except InputError:
         raise
     except Exception as error:  # a damaged workbook raises whatever its many parsers do
@@ -157,7 +174,7 @@ def _xlsx(path: Path, place: Place) -> Iterator[_Line]:
         ) from None
 
 
-def _first_sheet(data: bytes, place: Place) -> Iterator[_Line]:
+def _first_sheet(data: bytes, place: Place, expected: str) -> Iterator[_Line]:
     import openpyxl
 
     book = openpyxl.load_workbook(io.BytesIO(data), read_only=True, data_only=False)
@@ -168,12 +185,12 @@ def _first_sheet(data: bytes, place: Place) -> Iterator[_Line]:
         sheet.reset_dimensions()  # not every program writes them right
         for number, row in enumerate(sheet.iter_rows(values_only=True), start=1):
             label = f"sheet {sheet.title}, row {number}"
-            yield label, [_cell(value, label, place) for value in row]
+            yield label, [_cell(value, label, place, expected) for value in row]
     finally:
         book.close()
 
 
-def _cell(value: Any, label: str, place: Place) -> str:
+def _cell(value: Any, label: str, place: Place, expected: str) -> str:
     """A cell's value as the text it would have in a CSV file."""
     if value is None:
         return ""
@@ -185,7 +202,7 @@ def _cell(value: Any, label: str, place: Place) -> str:
         raise TableError(
             f"a cell holds a formula{formula}",
             place=Place(place.file, row=label),
-            expected="0, 1, - or a name",
+            expected=expected,
             hint="nothing in a table is worked out: paste values in place of formulas",
         )
     return text

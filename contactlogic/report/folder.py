@@ -22,7 +22,15 @@ __all__ = ["FORMS", "check_folder", "write_folder"]
 FORMS = ("ladder", "bridge")
 _TOP = ("design.json", "report.md")
 _DRAWN = tuple(f"{name}.{kind}" for name in ("drawing", "states") for kind in ("svg", "png", "gv"))
-_PER_FORM = (*_DRAWN, "chart.svg", "chart.png", "wiring.csv", "schedule.csv", "recovery.json")
+_PER_FORM = (
+    *_DRAWN,
+    "chart.svg",
+    "chart.png",
+    "wiring.csv",
+    "schedule.csv",
+    "purchase.csv",
+    "recovery.json",
+)
 _OURS = frozenset((*_TOP, *(f"{form}/{name}" for form in FORMS for name in _PER_FORM)))
 _SCHEMA = "contactlogic/design/"
 

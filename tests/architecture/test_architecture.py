@@ -25,7 +25,7 @@ LAYERS = (
     {"check", "minimize", "ladder", "search", "sequence"},
     {"synthesis"},
     {"sequencer", "repair"},
-    {"parts"},
+    {"purchase"},
     {"draw", "report"},
     {"cli"},
     {"__main__"},
@@ -41,6 +41,7 @@ ENGINES = (
     "pysat",
     "ortools.sat",  # the constraint solver's own layer
     "ortools.linear_solver",  # integer programs; starts much faster, and has its own use
+    "ortools.math_opt",  # the modelling layer over several solvers
     "pyeda",
     "dd",
     "graphviz",
