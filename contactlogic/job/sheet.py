@@ -8,19 +8,18 @@ from __future__ import annotations
 
 import csv
 import io
-import warnings
 import zipfile
 from collections.abc import Iterator, Sequence
 from pathlib import Path
-from typing import Any
 
 from contactlogic.errors import InputError, JobFileError, LimitError, Place, TableError
 from contactlogic.job.table import MOST_LOADS, MOST_ROWS, Grid, GridRow, too_many_inputs
 from contactlogic.job.textfile import read_bytes, read_text
 from contactlogic.naming import check_names, did_you_mean, listed, shortened
 from contactlogic.truth import MAX_INPUTS
+from contactlogic.workbook import Cell, read_first_sheet
 
-__all__ = ["SUFFIXES", "read_cells", "read_sheet"]
+__all__ = ["SUFFIXES", "Line", "read_cells", "read_lines", "read_sheet"]
 
 SUFFIXES = (".csv", ".xlsx")
 _MOST_COLUMNS = MOST_LOADS + 64  # room to say by how much there are too many relays
@@ -29,7 +28,8 @@ _MOST_UNPACKED = 256 << 20  # bytes; a full table of 16 inputs and 8 loads is a 
 
 _MARKS = "0, 1, - or a name"  # what a cell of a truth table may hold
 
-_Line = tuple[str, list[str]]  # what the user calls the line, its cells
+Line = tuple[str, list[Cell]]
+"""What the user calls the line, and its cells."""
 
 
 def read_sheet(path: Path, loads: Sequence[str], shown: str) -> Grid:
@@ -72,6 +72,20 @@ def read_cells(path: Path, shown: str, expected: str) -> list[tuple[str, list[st
     Returns what the user calls each line ("line 4", "sheet Table, row 4") with its cells.
     """
     place = Place(file=shown)
+    return _filled(read_lines(path, place), place, expected)
+
+
+def read_lines(path: Path, place: Place, *, comments: bool = True) -> Iterator[Line]:
+    """Lines of a CSV or XLSX file, empty ones too: what the user calls each, and its cells.
+
+    Args:
+        path: the file.
+        place: the file's name for messages.
+        comments: pass over lines of a CSV file that begin with #.
+
+    Raises:
+        JobError: the file cannot be read.
+    """
     suffix = path.suffix.lower()
     if suffix not in SUFFIXES:
         raise JobFileError(
@@ -79,15 +93,15 @@ def read_cells(path: Path, shown: str, expected: str) -> list[tuple[str, list[st
             place=place,
             expected="a file ending in .csv or .xlsx",
         )
-    lines = _csv(path, place) if suffix == ".csv" else _xlsx(path, place, expected)
-    return _filled(lines, place)
+    return _csv(path, place, comments) if suffix == ".csv" else _xlsx(path, place)
 
 
-def _filled(lines: Iterator[_Line], place: Place) -> list[_Line]:
+def _filled(lines: Iterator[Line], place: Place, expected: str) -> list[tuple[str, list[str]]]:
     """Lines that hold something, without the empty cells past the last column of the header."""
-    kept: list[_Line] = []
+    kept: list[tuple[str, list[str]]] = []
     width = read = 0
-    for label, cells in lines:
+    for label, found in lines:
+        cells = _plain(label, found, place, expected)
         read += 1 + len(cells)  # empty ones included: they take time as well
         while len(cells) > width and not cells[-1]:
             cells.pop()
@@ -129,7 +143,7 @@ def _columns(
     return relays, fed
 
 
-def _csv(path: Path, place: Place) -> Iterator[_Line]:
+def _csv(path: Path, place: Place, comments: bool) -> Iterator[Line]:
     text = read_text(path, place)
     with io.StringIO(text, newline=None) as stream:  # any kind of line ending
         head = next((line for line in stream if line.strip(" \t\n,;") and line[0] != "#"), "")
@@ -139,9 +153,9 @@ def _csv(path: Path, place: Place) -> Iterator[_Line]:
         try:
             for cells in reader:
                 cells = [cell.strip() for cell in cells]
-                if cells and cells[0].startswith("#"):
+                if comments and cells and cells[0].startswith("#"):
                     continue
-                yield f"line {reader.line_num}", cells
+                yield f"line {reader.line_num}", [Cell(cell) for cell in cells]
         except csv.Error as error:
             raise TableError(
                 f"not a CSV table: {error}",
@@ -150,7 +164,7 @@ def _csv(path: Path, place: Place) -> Iterator[_Line]:
             ) from None
 
 
-def _xlsx(path: Path, place: Place, expected: str) -> Iterator[_Line]:
+def _xlsx(path: Path, place: Place) -> Iterator[Line]:
     data = read_bytes(path, place)
     try:
         with zipfile.ZipFile(io.BytesIO(data)) as packed:
@@ -161,48 +175,36 @@ def _xlsx(path: Path, place: Place, expected: str) -> Iterator[_Line]:
                 place=place,
                 expected=f"at most {_MOST_UNPACKED >> 20} MiB when unpacked",
             )
-        with warnings.catch_warnings():  # of features of workbooks that do not matter here
-            warnings.simplefilter("ignore")
-            yield from _first_sheet(data, place, expected)
+        yield from read_first_sheet(data)
     except InputError:
         raise
-    except Exception as error:  # a damaged workbook raises whatever its many parsers do
-        raise JobFileError(
-            f"not an XLSX workbook ({type(error).__name__})",
-            place=place,
-            expected="a workbook as spreadsheet programs save it",
-        ) from None
-
-
-def _first_sheet(data: bytes, place: Place, expected: str) -> Iterator[_Line]:
-    import openpyxl
-
-    book = openpyxl.load_workbook(io.BytesIO(data), read_only=True, data_only=False)
-    try:
-        if not book.worksheets:
-            raise TableError("the workbook has no sheet", place=place, expected="a sheet of cells")
-        sheet = book.worksheets[0]
-        sheet.reset_dimensions()  # not every program writes them right
-        for number, row in enumerate(sheet.iter_rows(values_only=True), start=1):
-            label = f"sheet {sheet.title}, row {number}"
-            yield label, [_cell(value, label, place, expected) for value in row]
-    finally:
-        book.close()
-
-
-def _cell(value: Any, label: str, place: Place, expected: str) -> str:
-    """A cell's value as the text it would have in a CSV file."""
-    if value is None:
-        return ""
-    if isinstance(value, bool | int) or (isinstance(value, float) and value.is_integer()):
-        return str(int(value))
-    text = value.strip() if isinstance(value, str) else str(value)
-    if text.startswith("=") or hasattr(value, "ref"):  # formulas over several cells are objects
-        formula = f" {shortened(text)}" if text.startswith("=") else ""
+    except LookupError as error:
+        if str(error) != "no sheet":
+            raise _no_workbook(error, place) from None
         raise TableError(
-            f"a cell holds a formula{formula}",
-            place=Place(place.file, row=label),
-            expected=expected,
-            hint="nothing in a table is worked out: paste values in place of formulas",
-        )
-    return text
+            "the workbook has no sheet", place=place, expected="a sheet of cells"
+        ) from None
+    except Exception as error:  # a damaged workbook raises whatever its many parsers do
+        raise _no_workbook(error, place) from None
+
+
+def _no_workbook(error: Exception, place: Place) -> JobFileError:
+    return JobFileError(
+        f"not an XLSX workbook ({type(error).__name__})",
+        place=place,
+        expected="a workbook as spreadsheet programs save it",
+    )
+
+
+def _plain(label: str, cells: list[Cell], place: Place, expected: str) -> list[str]:
+    """The cells' text; a formula is refused."""
+    for cell in cells:
+        if cell.formula:
+            formula = f" {shortened(cell.text)}" if cell.text.startswith("=") else ""
+            raise TableError(
+                f"a cell holds a formula{formula}",
+                place=Place(place.file, row=label),
+                expected=expected,
+                hint="nothing in a table is worked out: paste values in place of formulas",
+            )
+    return [cell.text for cell in cells]

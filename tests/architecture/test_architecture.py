@@ -20,11 +20,11 @@ from contactlogic import errors
 ROOT = Path(contactlogic.__file__).parent
 
 LAYERS = (
-    {"truth", "errors", "child", "naming", "algebra"},
+    {"truth", "errors", "child", "naming", "algebra", "workbook"},
     {"formula", "job", "network", "design", "terminals"},
-    {"check", "minimize", "ladder", "search", "sequence"},
+    {"check", "minimize", "ladder", "search", "sequence", "hazard", "fault", "commission"},
     {"synthesis"},
-    {"sequencer", "repair"},
+    {"sequencer", "repair", "trace"},
     {"purchase"},
     {"draw", "report"},
     {"cli"},
