@@ -10,9 +10,9 @@ from decimal import Decimal
 from contactlogic.job.model import Job
 from contactlogic.network import Network, Pole
 from contactlogic.purchase.currents import pole_currents
-from contactlogic.purchase.parts import Coil, Contacts, Use, current_kind
+from contactlogic.purchase.parts import SERVES, Coil, Contacts, FormLetter, Use, current_kind
 
-__all__ = ["Need", "PoleNeed", "needs_of", "use_of", "wanted_coil"]
+__all__ = ["Need", "PoleNeed", "fits", "needs_of", "use_of", "wanted_coil"]
 
 
 @dataclass(frozen=True)
@@ -42,6 +42,11 @@ class Need:
 
     def count(self, use: Use) -> int:
         return sum(pole.use == use for pole in self.poles)
+
+
+def fits(form: FormLetter, amps: Decimal | None, pole: PoleNeed) -> bool:
+    """Whether a contact can take over a pole; currents are compared where both are given."""
+    return pole.use in SERVES[form] and (amps is None or amps >= pole.amps)
 
 
 def use_of(pole: Pole) -> Use:
