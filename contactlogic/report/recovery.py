@@ -172,12 +172,9 @@ def transit_line(transit: Transit, n: int) -> str:
     where = count(transit.states, "state")
     if transit.in_sequence:
         where += f", {transit.in_sequence} of the sequence"
-    may = "" if transit.sure else "may "
-    if transit.kind == "gap":
-        what = f"{transit.coil} is unfed for a moment"
-    else:
-        what = f"{transit.coil} {may}{'is' if not may else 'be'} fed for a moment"
-    return f"{what} while {transit.mover} moves ({where}, such as {state_text(transit.example, n)})"
+    fed = "unfed" if transit.kind == "gap" else "fed"
+    where += f", such as {state_text(transit.example, n)}"
+    return f"{transit.coil} is {fed} for a moment while {transit.mover} moves ({where})"
 
 
 def repair_lines(repair: Repair | NoRepair) -> Iterator[str]:

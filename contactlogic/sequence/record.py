@@ -73,7 +73,6 @@ def recovery_json(recovery: Recovery, transits: Sequence[Transit] | None = None)
                 "states": transit.states,
                 "in_sequence": transit.in_sequence,
                 "example": text(transit.example),
-                "sure": transit.sure,
             }
             for transit in transits
         ],

@@ -1,11 +1,9 @@
 """Contacts in transit: gaps and flashes at coils while a relay moves (design.md section 7).
 
 A changeover opens before it closes, and the contacts of one relay do not move together.  While
-relay `m` moves, each of its poles is old, open or new.  A coil fed before and after has a *gap*
-if some mixture leaves it unfed: the least is all poles open, so that one case decides.  A coil
-fed neither before nor after *flashes* if some mixture feeds it: more is fed the more is closed,
-so only mixtures with every pole on make or on break count, and poles used on one throw are
-closed in all of them.  None of these cases depends on the position of `m` itself, so each is
+relay `m` moves, each of its poles is old, open or new (`contactlogic.hazard.mixture`).  A coil fed
+before and after has a *gap* if some mixture leaves it unfed; a coil fed neither before nor after
+*flashes* if some mixture feeds it.  Neither depends on the position of `m` itself, so each is
 worked out for all states at once.
 """
 
@@ -13,20 +11,18 @@ from __future__ import annotations
 
 from collections.abc import Collection
 from dataclasses import dataclass
-from itertools import product
 from typing import TYPE_CHECKING, Literal
 
-from contactlogic.network import Network, Pole
+from contactlogic.hazard import mixture
+from contactlogic.network import Network
 from contactlogic.sequence import bits
-from contactlogic.sequence.drives import conducting, variables
+from contactlogic.sequence.drives import variables
 
 if TYPE_CHECKING:
     from contactlogic.sequence.bits import Words
     from contactlogic.sequence.motion import Motion
 
 __all__ = ["Transit", "transits"]
-
-_MIXED = 8  # changeovers of one relay whose mixtures are all tried
 
 
 @dataclass(frozen=True)
@@ -39,8 +35,6 @@ class Transit:
         states: states that the mover may move from in which this happens.
         in_sequence: how many of those are in the sequence.
         example: the lowest such state, of the sequence if any is.
-        sure: False if the mover has so many changeovers that not every mixture was tried; then
-            the flash may be impossible.
     """
 
     kind: Literal["gap", "flash"]
@@ -49,7 +43,6 @@ class Transit:
     states: int
     in_sequence: int
     example: int
-    sure: bool = True
 
 
 def transits(
@@ -86,7 +79,6 @@ def transits(
             entry.states,
             entry.in_sequence,
             entry.example,
-            kind == "gap" or len(_changeovers(network, mover)) <= _MIXED,
         )
         for (mover, coil, kind), entry in found
     )
@@ -108,66 +100,40 @@ class _Tally:
         self.in_sequence += bits.count_of(ours)
 
 
-def _changeovers(network: Network, mover: str) -> list[Pole]:
-    return [p for p in network.poles if p.relay == mover and p.make and p.break_]
-
-
 def _unsteady(
     network: Network, mover: str, start: int, stop: int
 ) -> list[tuple[Literal["gap", "flash"], str, Words]]:
     """Gaps and flashes while one relay moves, whatever state it moves from."""
     import numpy as np
 
-    values = variables(network.relays, start, stop)
-    ones = np.full(stop - start, ~np.uint64(0), dtype=np.uint64)
+    own = [pole for pole in network.poles if pole.relay == mover]
+    if not own:
+        return []
+    states = (1 << 64 * (stop - start)) - 1
+    values = {
+        name: int.from_bytes(words.astype("<u8").tobytes(), "little")
+        for name, words in variables(network.relays, start, stop).items()
+    }
     fixed = [
-        (c.common, c.throw, values[c.relay] if c.make else ~values[c.relay])
+        (c.common, c.throw, values[c.relay] if c.make else states & ~values[c.relay])
         for c in network.contacts()
         if c.relay != mover
     ]
-    own = [p for p in network.poles if p.relay == mover]
-    if not own:
-        return []
-    coils = {name: network.loads[name] for name in network.relays if name in network.loads}
-
-    def live(makes: Collection[Pole], breaks: Collection[Pole]) -> dict[str, Words]:
-        closed = [(p.common, p.make, ones) for p in makes if p.make is not None]
-        closed += [(p.common, p.break_, ones) for p in breaks if p.break_ is not None]
-        return conducting(network.supply, [*fixed, *closed], stop - start)
-
-    nothing = np.zeros(stop - start, dtype=np.uint64)
-    operated, released, between = live(own, ()), live((), own), live((), ())
+    moving = mixture.Transit(network.supply, fixed, own, states)
+    operated, released = moving.steady(True), moving.steady(False)
+    every = moving.with_all_closed()
     found: list[tuple[Literal["gap", "flash"], str, Words]] = []
-    dark: dict[str, Words] = {}
-    for coil, net in coils.items():
+
+    def add(kind: Literal["gap", "flash"], coil: str, where: int) -> None:
+        if where:
+            packed = np.frombuffer(where.to_bytes(8 * (stop - start), "little"), dtype="<u8")
+            found.append((kind, coil, packed.astype(np.uint64)))
+
+    for coil in network.relays:
+        net = network.loads.get(coil)
         if net is None:
             continue
-        on, off = operated.get(net, nothing), released.get(net, nothing)
-        gap = on & off & ~between.get(net, nothing)
-        if gap.any():
-            found.append(("gap", coil, gap))
-        unfed = ~(on | off)
-        if unfed.any():
-            dark[coil] = unfed
-    every = live(own, own)
-    dark = {c: w for c, w in dark.items() if (w & every.get(coils[c] or "", nothing)).any()}
-    if not dark:
-        return found
-    both = _changeovers(network, mover)
-    single = [p for p in own if p not in both]
-    mixtures = [every]
-    if len(both) <= _MIXED:
-        mixtures = [
-            live(
-                [*single, *(p for p, make in zip(both, picked, strict=True) if make)],
-                [*single, *(p for p, make in zip(both, picked, strict=True) if not make)],
-            )
-            for picked in product((False, True), repeat=len(both))
-        ]
-    for coil, unfed in dark.items():
-        fed = nothing.copy()
-        for mixture in mixtures:
-            fed |= mixture.get(coils[coil] or "", nothing)
-        if (fed & unfed).any():
-            found.append(("flash", coil, fed & unfed))
+        on, off = operated.get(net, 0), released.get(net, 0)
+        add("gap", coil, moving.can_leave(net, on & off))
+        add("flash", coil, moving.can_feed(net, every.get(net, 0) & ~(on | off)))
     return found

@@ -39,8 +39,7 @@ SYNTHESISERS = {"minimize", "ladder", "search", "sequence", "synthesis"}
 ENGINES = (
     "biodivine_aeon",
     "pysat",
-    "ortools.sat",  # the constraint solver's own layer
-    "ortools.linear_solver",  # integer programs; starts much faster, and has its own use
+    "ortools.linear_solver",
     "ortools.math_opt",  # the modelling layer over several solvers
     "pyeda",
     "dd",
