@@ -5,12 +5,11 @@ No colour and no cursor movement, so that it reads the same on a terminal, in a 
 
 from __future__ import annotations
 
-import io
-import textwrap
 from collections.abc import Sequence
 
 from contactlogic.design import Design, Result
 from contactlogic.job.model import Job
+from contactlogic.report.columns import fold, in_columns
 from contactlogic.report.facts import Facts
 from contactlogic.report.phrases import (
     COMPARED,
@@ -30,8 +29,6 @@ from contactlogic.report.wiring import design_name
 from contactlogic.sequencer import SequencerResult
 
 __all__ = ["summary"]
-
-_UNFOLDED = 1_000_000  # columns; more than any line has
 
 
 def summary(
@@ -54,7 +51,7 @@ def summary(
     if len(result.designs) > 1:
         parts.append(_side_by_side(result, width))
     lines = [line for part in parts for line in (*part, "")][:-1]
-    return "\n".join(folded for line in lines for folded in _fold(line, width)) + "\n"
+    return "\n".join(folded for line in lines for folded in fold(line, width)) + "\n"
 
 
 def _at_rest(result: Result, facts: Sequence[Facts]) -> list[str]:
@@ -67,7 +64,7 @@ def _at_rest(result: Result, facts: Sequence[Facts]) -> list[str]:
 
 def _side_by_side(result: Result, width: int | None) -> list[str]:
     rows = compared(result.designs)
-    return [*_table(COMPARED, rows, width=width), "", saving(result)]
+    return [*in_columns(COMPARED, rows, width=width), "", saving(result)]
 
 
 def _design(design: Design, job: Job, facts: Facts, width: int | None, verbose: bool) -> list[str]:
@@ -75,7 +72,7 @@ def _design(design: Design, job: Job, facts: Facts, width: int | None, verbose: 
     network = design.network
     relays = len(job.relays)
     lines = [design_name(design, job), ""]
-    lines += _table(
+    lines += in_columns(
         ("load", "longest run", "as built"),
         [(load, str(facts.runs[load]), formula(facts, load, relays)) for load in network.loads],
         width=width,
@@ -96,12 +93,6 @@ def _design(design: Design, job: Job, facts: Facts, width: int | None, verbose: 
     return [*lines, f"bound: {bound_line(design.bound)}", proof_line(design, job, facts)]
 
 
-def _fold(line: str, width: int | None) -> list[str]:
-    if width is None or len(line) <= width:
-        return [line]
-    return textwrap.wrap(line, width, subsequent_indent="  ")
-
-
 def _relays(design: Design, job: Job, width: int | None) -> list[str]:
     """The per-relay table; the budget column only where the job sets one."""
     limits = job.limits
@@ -114,14 +105,14 @@ def _relays(design: Design, job: Job, width: int | None) -> list[str]:
         figures = (n.poles, n.makes, n.breaks, n.changeovers, n.springs)
         row = [relay, *(str(figure) for figure in figures)]
         rows.append([*row, budget(limits, relay)] if limited else row)
-    return _table(header, rows, width=width, figures=True)
+    return in_columns(header, rows, width=width, figures=True)
 
 
 def _covers(design: Design, width: int | None) -> list[str]:
     """How each load's two-level cover was found."""
     if not design.covers:
         return ["no two-level covers recorded"]
-    return _table(
+    return in_columns(
         ("load", "cover", "size", "status"),
         [
             (
@@ -134,33 +125,3 @@ def _covers(design: Design, width: int | None) -> list[str]:
         ],
         width=width,
     )
-
-
-def _table(
-    header: Sequence[str],
-    rows: Sequence[Sequence[str]],
-    *,
-    width: int | None,
-    figures: bool = False,
-) -> list[str]:
-    """Rows in columns, folded to `width`; with `figures` all but the first stand to the right."""
-    from rich.console import Console
-    from rich.table import Table
-    from rich.text import Text
-
-    table = Table(box=None, pad_edge=False, padding=(0, 3, 0, 0), header_style=None)
-    for i, name in enumerate(header):
-        right = figures and i > 0
-        table.add_column(name, justify="right" if right else "left", overflow="fold")
-    for row in rows:
-        table.add_row(*(Text(cell) for cell in row))
-    out = io.StringIO()
-    console = Console(
-        file=out,
-        width=width or _UNFOLDED,
-        color_system=None,
-        force_terminal=False,
-        legacy_windows=False,
-    )
-    console.print(table)
-    return [line.rstrip() for line in out.getvalue().splitlines()]
