@@ -26,7 +26,7 @@ from contactlogic.sequence.wants import drive_targets, load_targets
 from contactlogic.synthesis import Search, synthesise
 from contactlogic.truth import Target
 
-__all__ = ["MOST_RELAYS", "SequencerResult", "as_table_job", "table_job", "wire_sequence"]
+__all__ = ["MOST_RELAYS", "SequencerResult", "as_table_job", "expanded", "table_job", "wire_sequence"]
 
 MOST_RELAYS = 10
 """Most relays and inputs of a sequence that is wired; recovery is proved of far more."""
@@ -83,8 +83,14 @@ def table_job(job: SequenceJob, expansion: Expansion) -> Job:
 
 def as_table_job(job: SequenceJob | PatternJob) -> Job:
     """What a sequence or pattern wants of its wiring, row by row."""
+    return expanded(job)[0]
+
+
+def expanded(job: SequenceJob | PatternJob) -> tuple[Job, Expansion]:
+    """What a sequence or pattern wants of its wiring, row by row, and its one-relay steps."""
     listed, _ = _listed(job)
-    return table_job(listed, resolve(listed.table))
+    expansion = resolve(listed.table)
+    return table_job(listed, expansion), expansion
 
 
 def _listed(job: SequenceJob | PatternJob) -> tuple[SequenceJob, tuple[str, ...]]:

@@ -4,38 +4,17 @@ from __future__ import annotations
 
 import io
 import sys
-from enum import StrEnum
 from pathlib import Path
 from typing import Annotated
 
 import typer
 
+from contactlogic.cli import bench
+from contactlogic.cli.choices import Form, Forms, Moves
 from contactlogic.cli.status import Status, guarded
 from contactlogic.errors import JobFileError
 
 __all__ = ["app", "run"]
-
-
-class Forms(StrEnum):
-    """What `--form` takes."""
-
-    ladder = "ladder"
-    bridge = "bridge"
-    both = "both"
-
-
-class Form(StrEnum):
-    """What `--form` takes where one is meant."""
-
-    ladder = "ladder"
-    bridge = "bridge"
-
-
-class Moves(StrEnum):
-    """What `--moves` takes."""
-
-    single = "single"
-    together = "together"
 
 
 app = typer.Typer(
@@ -222,3 +201,151 @@ def recover(
             raise typer.Exit(Status.STOPPED)
         if not outcome.recovers:
             raise typer.Exit(Status.WRONG)
+
+
+@app.command()
+def trace(
+    wires: Annotated[
+        Path,
+        typer.Argument(metavar="WIRES", help="List of wires: .csv or .xlsx with columns from, to."),
+    ],
+    job: Annotated[
+        Path | None, typer.Argument(metavar="[JOB]", help="Job file to compare the wiring with.")
+    ] = None,
+    feed: Annotated[
+        list[str] | None,
+        typer.Option(metavar="NAME", help="What the list calls the feed rail; may be repeated."),
+    ] = None,
+    back: Annotated[
+        list[str] | None,
+        typer.Option("--return", metavar="NAME", help="What the list calls the return rail."),
+    ] = None,
+    name: Annotated[
+        list[str] | None,
+        typer.Option(metavar="'big lamp=LAMP'", help="A name of the list and the job's for it."),
+    ] = None,
+    follows: Annotated[
+        list[str] | None,
+        typer.Option(metavar="UP_2=UP", help="A repeater of the list and the relay it follows."),
+    ] = None,
+    row: Annotated[
+        str | None,
+        typer.Option(metavar="'UP=1 DOWN=0'", help="Print the conducting paths of this row."),
+    ] = None,
+    json: Annotated[bool, typer.Option("--json", help="Print the finding as JSON alone.")] = False,
+    loads: Annotated[
+        str | None,
+        typer.Option(metavar="A,B", help="Which columns of a .csv or .xlsx job are loads."),
+    ] = None,
+    unlisted: Annotated[
+        str | None,
+        typer.Option(metavar="off|free", help="What loads do in rows that a .csv or .xlsx lacks."),
+    ] = None,
+) -> None:
+    """Say what existing wiring really does, and whether it is what JOB wants: 0 yes, 1 no."""
+    from contactlogic.cli import tracing
+
+    request = tracing.Request(
+        wires=wires,
+        job=job,
+        feed=tuple(feed or ()),
+        back=tuple(back or ()),
+        names=tuple(name or ()),
+        follows=tuple(follows or ()),
+        row=row,
+        json=json,
+        loads=loads,
+        unlisted=unlisted,
+    )
+    with guarded(keep=str(wires)):
+        if not tracing.run(request):
+            raise typer.Exit(Status.WRONG)
+
+
+@app.command()
+def schedule(
+    source: Annotated[
+        Path,
+        typer.Argument(metavar="JOB|DESIGN", help="A job, which is wired first, or a design.json."),
+    ],
+    parts: Annotated[
+        Path | None,
+        typer.Option(
+            metavar="PARTS", help="Parts list, .csv or .xlsx; without it nothing is bought."
+        ),
+    ] = None,
+    spares: Annotated[
+        int, typer.Option(min=0, max=1000, metavar="PERCENT", help="Spares of each part bought.")
+    ] = 0,
+    have: Annotated[
+        list[str] | None,
+        typer.Option(
+            metavar="RELAY[=FORM]", help="Relay that is there already, such as UP or UP=2C."
+        ),
+    ] = None,
+    buy: Annotated[
+        list[str] | None,
+        typer.Option(metavar="RELAY", help="Buy a relay that the job says is moved from outside."),
+    ] = None,
+    coil_volts: Annotated[
+        float | None, typer.Option(min=0.001, metavar="V", help="Voltage of the coils.")
+    ] = None,
+    no_repeaters: Annotated[
+        bool, typer.Option("--no-repeaters", help="Buy one relay for each, none in parallel.")
+    ] = False,
+    job: Annotated[
+        Path | None,
+        typer.Option(metavar="JOB", help="The job of a design.json: currents, coils, buttons."),
+    ] = None,
+    out: Annotated[
+        Path | None, typer.Option(metavar="DIR", help="Folder for schedule.csv and purchase.csv.")
+    ] = None,
+    force: Annotated[
+        bool, typer.Option("--force", help="Write even where the folder holds other files.")
+    ] = False,
+    json: Annotated[bool, typer.Option("--json", help="Print as JSON alone.")] = False,
+    quiet: Annotated[bool, typer.Option("--quiet", "-q", help="Print errors only.")] = False,
+    form: Annotated[Forms, typer.Option(help="Which forms to wire a JOB in.")] = Forms.both,
+    seed: Annotated[int, typer.Option(min=0, help="Of the search for a JOB's wiring.")] = 0,
+    seconds: Annotated[
+        float | None, typer.Option(min=0.1, metavar="S", help="Search for the wiring so long.")
+    ] = None,
+    effort: Annotated[
+        int | None, typer.Option(min=0, metavar="N", help="Search by N windows instead.")
+    ] = None,
+    loads: Annotated[
+        str | None,
+        typer.Option(metavar="A,B", help="Which columns of a .csv or .xlsx table are loads."),
+    ] = None,
+    unlisted: Annotated[
+        str | None,
+        typer.Option(metavar="off|free", help="What loads do in rows that a .csv or .xlsx lacks."),
+    ] = None,
+) -> None:
+    """Count the contacts of each relay and buy the cheapest parts for them."""
+    from contactlogic.cli import scheduling
+
+    with guarded(keep=str(source)):
+        if seconds is not None and effort is not None:
+            raise JobFileError("--seconds and --effort exclude each other", hint="give one of them")
+        from contactlogic.synthesis import Search
+
+        request = scheduling.Request(
+            source=source,
+            search=Search(form.value, seconds, effort, seed),
+            asked=scheduling.Asked(
+                parts, spares, coil_volts, not no_repeaters, tuple(have or ()), tuple(buy or ())
+            ),
+            job=job,
+            out=out,
+            force=force,
+            json=json,
+            quiet=quiet,
+            loads=loads,
+            unlisted=unlisted,
+        )
+        if scheduling.run(request):
+            raise typer.Exit(Status.STOPPED)
+
+
+bench.register(app)

@@ -17,7 +17,7 @@ from contactlogic.job.model import Job, PatternJob
 if TYPE_CHECKING:
     from contactlogic.synthesis import Forms, Search
 
-__all__ = ["Request", "run", "searching"]
+__all__ = ["Request", "run", "searching", "wired"]
 
 _STOPPED = "stopped early: this is the best found so far"
 
@@ -71,7 +71,7 @@ def run(request: Request) -> Result:
             request.repeaters,
             watch,
         )
-        result = _wired(job, search)
+        result = wired(job, search)
     if request.json:
         from contactlogic.report.designfile import dumps
 
@@ -115,7 +115,7 @@ def searching(request: Request, now: float) -> float | None:
     return max(0.1 * request.seconds, left)
 
 
-def _wired(job: Wirable, search: Search) -> Result:
+def wired(job: Wirable, search: Search) -> Result:
     if isinstance(job, Job):
         from contactlogic.synthesis import synthesise
 

@@ -3,12 +3,14 @@
 from contactlogic.hazard.cure import Cure, Cures, cures
 from contactlogic.hazard.find import Hazard, HazardPenalty, MovingPole, hazards
 from contactlogic.hazard.moves import Moves, listed_moves, pairs_within, step_moves
+from contactlogic.hazard.study import HazardStudy, study_hazards
 
 __all__ = [
     "Cure",
     "Cures",
     "Hazard",
     "HazardPenalty",
+    "HazardStudy",
     "Moves",
     "MovingPole",
     "cures",
@@ -16,4 +18,5 @@ __all__ = [
     "listed_moves",
     "pairs_within",
     "step_moves",
+    "study_hazards",
 ]
