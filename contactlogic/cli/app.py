@@ -9,7 +9,7 @@ from typing import Annotated
 
 import typer
 
-from contactlogic.cli import bench
+from contactlogic.cli import bench, schedule
 from contactlogic.cli.choices import Form, Forms, Moves
 from contactlogic.cli.status import Status, guarded
 from contactlogic.errors import JobFileError
@@ -262,90 +262,5 @@ def trace(
             raise typer.Exit(Status.WRONG)
 
 
-@app.command()
-def schedule(
-    source: Annotated[
-        Path,
-        typer.Argument(metavar="JOB|DESIGN", help="A job, which is wired first, or a design.json."),
-    ],
-    parts: Annotated[
-        Path | None,
-        typer.Option(
-            metavar="PARTS", help="Parts list, .csv or .xlsx; without it nothing is bought."
-        ),
-    ] = None,
-    spares: Annotated[
-        int, typer.Option(min=0, max=1000, metavar="PERCENT", help="Spares of each part bought.")
-    ] = 0,
-    have: Annotated[
-        list[str] | None,
-        typer.Option(
-            metavar="RELAY[=FORM]", help="Relay that is there already, such as UP or UP=2C."
-        ),
-    ] = None,
-    buy: Annotated[
-        list[str] | None,
-        typer.Option(metavar="RELAY", help="Buy a relay that the job says is moved from outside."),
-    ] = None,
-    coil_volts: Annotated[
-        float | None, typer.Option(min=0.001, metavar="V", help="Voltage of the coils.")
-    ] = None,
-    no_repeaters: Annotated[
-        bool, typer.Option("--no-repeaters", help="Buy one relay for each, none in parallel.")
-    ] = False,
-    job: Annotated[
-        Path | None,
-        typer.Option(metavar="JOB", help="The job of a design.json: currents, coils, buttons."),
-    ] = None,
-    out: Annotated[
-        Path | None, typer.Option(metavar="DIR", help="Folder for schedule.csv and purchase.csv.")
-    ] = None,
-    force: Annotated[
-        bool, typer.Option("--force", help="Write even where the folder holds other files.")
-    ] = False,
-    json: Annotated[bool, typer.Option("--json", help="Print as JSON alone.")] = False,
-    quiet: Annotated[bool, typer.Option("--quiet", "-q", help="Print errors only.")] = False,
-    form: Annotated[Forms, typer.Option(help="Which forms to wire a JOB in.")] = Forms.both,
-    seed: Annotated[int, typer.Option(min=0, help="Of the search for a JOB's wiring.")] = 0,
-    seconds: Annotated[
-        float | None, typer.Option(min=0.1, metavar="S", help="Search for the wiring so long.")
-    ] = None,
-    effort: Annotated[
-        int | None, typer.Option(min=0, metavar="N", help="Search by N windows instead.")
-    ] = None,
-    loads: Annotated[
-        str | None,
-        typer.Option(metavar="A,B", help="Which columns of a .csv or .xlsx table are loads."),
-    ] = None,
-    unlisted: Annotated[
-        str | None,
-        typer.Option(metavar="off|free", help="What loads do in rows that a .csv or .xlsx lacks."),
-    ] = None,
-) -> None:
-    """Count the contacts of each relay and buy the cheapest parts for them."""
-    from contactlogic.cli import scheduling
-
-    with guarded(keep=str(source)):
-        if seconds is not None and effort is not None:
-            raise JobFileError("--seconds and --effort exclude each other", hint="give one of them")
-        from contactlogic.synthesis import Search
-
-        request = scheduling.Request(
-            source=source,
-            search=Search(form.value, seconds, effort, seed),
-            asked=scheduling.Asked(
-                parts, spares, coil_volts, not no_repeaters, tuple(have or ()), tuple(buy or ())
-            ),
-            job=job,
-            out=out,
-            force=force,
-            json=json,
-            quiet=quiet,
-            loads=loads,
-            unlisted=unlisted,
-        )
-        if scheduling.run(request):
-            raise typer.Exit(Status.STOPPED)
-
-
 bench.register(app)
+schedule.register(app)

@@ -17,7 +17,7 @@ from contactlogic.job.model import Job, PatternJob
 if TYPE_CHECKING:
     from contactlogic.synthesis import Forms, Search
 
-__all__ = ["Request", "run", "searching", "wired"]
+__all__ = ["Request", "run", "screen_width", "searching", "wired"]
 
 _STOPPED = "stopped early: this is the best found so far"
 
@@ -88,7 +88,7 @@ def run(request: Request) -> Result:
 
     known = [facts(design, result.repeaters) for design in result.designs]
     made = papers(result, known)
-    said = summary(result, known, width=_width(), verbose=request.verbose)
+    said = summary(result, known, width=screen_width(), verbose=request.verbose)
     write_folder(folder, made.files, force=request.force)  # last, so that a fault leaves nothing
     if request.quiet:
         return result
@@ -135,7 +135,7 @@ def _limited(job: Wirable, request: Request) -> Wirable:
     return replace(job, limits=replace(job.limits, poles=poles))
 
 
-def _width() -> int | None:
+def screen_width() -> int | None:
     """Columns to fold to: the terminal's; nothing is folded in a pipe or a file."""
     return max(40, shutil.get_terminal_size().columns) if sys.stdout.isatty() else None
 

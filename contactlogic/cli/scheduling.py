@@ -1,0 +1,251 @@
+"""What `contactlogic schedule` does: contacts per relay, and the cheapest purchase for them."""
+
+from __future__ import annotations
+
+import re
+import sys
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+from contactlogic.cli.jobs import Wirable, wirable_job
+from contactlogic.cli.wiring import screen_width, wired
+from contactlogic.design import Design, Result
+from contactlogic.errors import DesignFileError, JobFileError, PartsError, Place
+from contactlogic.job.model import Job, PatternJob
+
+if TYPE_CHECKING:
+    from contactlogic.purchase.parts import Contacts
+    from contactlogic.purchase.schedule import Drawer, Schedule
+    from contactlogic.synthesis import Forms
+
+__all__ = ["Asked", "Request", "drawer_of", "run", "schedules_of_result"]
+
+_DESIGN = ".json"
+_SOLVER_SECONDS = 60.0  # for the purchase of one design
+
+
+@dataclass(frozen=True)
+class Asked:
+    """Options about the purchase, as typed."""
+
+    parts: Path | None = None
+    spares: int = 0
+    coil_volts: float | None = None
+    repeaters: bool = True
+    have: Sequence[str] = ()
+    buy: Sequence[str] = ()
+
+
+@dataclass(frozen=True)
+class Request:
+    """The options of one run."""
+
+    source: Path
+    job: Path | None = None
+    asked: Asked = Asked()
+    out: Path | None = None
+    force: bool = False
+    json: bool = False
+    quiet: bool = False
+    form: Forms = "both"
+    seed: int = 0
+    seconds: float | None = None
+    effort: int | None = None
+    loads: str | None = None
+    unlisted: str | None = None
+
+
+@dataclass(frozen=True)
+class _Found:
+    title: str
+    design_file: bytes
+    schedules: list[Schedule]
+    interrupted: bool = False
+
+
+def run(request: Request) -> bool:
+    """Do what was asked; returns whether the search was stopped early.
+
+    Raises:
+        InputError: job, design, parts list or folder cannot be used, or nothing can be bought.
+    """
+    from contactlogic.report.folder import check_folder, write_folder
+    from contactlogic.report.purchase import purchase_json, purchase_text
+
+    if request.out is not None:
+        check_folder(request.out, force=request.force)
+    of_design = request.source.suffix.lower() == _DESIGN
+    found = _of_design(request) if of_design else _of_job(request)
+    written = []
+    if request.out is not None:
+        files = _files(found)
+        written = sorted(files, key=lambda name: (name.count("/"), name))
+        kept = _kept(request.out, found.design_file)
+        write_folder(request.out, kept | files, force=request.force)
+    if request.json:
+        sys.stdout.write(purchase_json(found.schedules, found.title))
+    elif not request.quiet:
+        sys.stdout.write(purchase_text(found.schedules, found.title, width=screen_width()))
+        if written:
+            print(f"written to {request.out}: {', '.join(written)}")
+    if found.interrupted and not request.quiet:
+        print("contactlogic: stopped early: these are the best designs so far", file=sys.stderr)
+    return found.interrupted
+
+
+def _of_design(request: Request) -> _Found:
+    """Schedules of a design file, with the job's facts where it is given."""
+    from contactlogic.cli.subject import Source, subject
+    from contactlogic.report.designfile import read_design
+
+    if request.job is None:
+        if request.loads is not None or request.unlisted is not None:
+            raise JobFileError("--loads and --unlisted go with a job that is a bare table")
+        file = read_design(request.source)
+        title, designs, repeaters = file.title, file.designs, file.repeaters
+        job: Job | None = None
+        outside: tuple[str, ...] = ()
+        slow: tuple[str, ...] = ()
+    else:
+        wanted = Source(
+            request.source, request.job, None, request.loads, request.unlisted, request.quiet
+        )
+        found = subject(wanted)  # proves the design against the job
+        title, designs, repeaters = found.job.title, found.designs, found.repeaters
+        job = found.job
+        outside, slow = _moved(wirable_job(request.job, request.loads, request.unlisted))
+    designs = tuple(each for each in designs if request.form in ("both", each.form))
+    if not designs:
+        which = "" if request.form == "both" else f"{request.form} "
+        what = f"the file holds no {which}design"
+        raise DesignFileError(what, place=Place(file=str(request.source)))
+    drawer = drawer_of(request.asked, job)
+    schedules = _schedules(designs, repeaters, drawer, job, outside, slow)
+    return _Found(title, request.source.read_bytes(), schedules)
+
+
+def _of_job(request: Request) -> _Found:
+    """Schedules of a job, which is wired first."""
+    from contactlogic.cli.progress import live
+    from contactlogic.report.designfile import dumps
+    from contactlogic.synthesis import Search
+
+    if request.job is not None:
+        raise JobFileError(
+            f"{request.source} is no design file",
+            expected="a design file (.json), then its job; or a job alone, which is wired",
+        )
+    job = wirable_job(request.source, request.loads, request.unlisted)
+    drawer_of(request.asked, None)  # a fault of the parts list is told before the search
+    with live(not (request.quiet or request.json)) as watch:
+        search = Search(request.form, request.seconds, request.effort, request.seed, watch=watch)
+        result = wired(job, search)
+    schedules = schedules_of_result(job, result, request.asked)
+    return _Found(result.job.title, dumps(result).encode(), schedules, result.interrupted)
+
+
+def schedules_of_result(job: Wirable, result: Result, asked: Asked) -> list[Schedule]:
+    """Schedules of designs just made.
+
+    Raises:
+        PartsError: the parts list cannot be used, or nothing can be bought for some relay.
+    """
+    outside, slow = _moved(job)
+    drawer = drawer_of(asked, result.job)
+    return _schedules(result.designs, result.repeaters, drawer, result.job, outside, slow)
+
+
+def _schedules(
+    designs: Sequence[Design],
+    repeaters: Mapping[str, str],
+    drawer: Drawer,
+    job: Job | None,
+    outside: Sequence[str],
+    slow: Sequence[str],
+) -> list[Schedule]:
+    from contactlogic.purchase.schedule import schedule_of
+
+    return [
+        schedule_of(design, drawer, job=job, repeaters=repeaters, outside=outside, slow=slow)
+        for design in designs
+    ]
+
+
+def _moved(job: Wirable) -> tuple[tuple[str, ...], tuple[str, ...]]:
+    """What is moved from outside, and what is slow to move."""
+    if isinstance(job, Job):
+        return (), ()
+    if isinstance(job, PatternJob):
+        from contactlogic.sequence.pattern import sequence_of
+
+        job, _ = sequence_of(job)
+    timing = job.table.timing
+    return tuple(job.table.inputs), (*timing.slow_release, *timing.slow_operate)
+
+
+def drawer_of(asked: Asked, job: Job | None) -> Drawer:
+    """The parts list and how to buy from it.
+
+    Raises:
+        InputError: the parts list or an option cannot be used.
+    """
+    from contactlogic.purchase.buy import Order
+    from contactlogic.purchase.needs import wanted_coil
+    from contactlogic.purchase.read_parts import read_parts
+    from contactlogic.purchase.schedule import Drawer
+
+    parts = None if asked.parts is None else read_parts(asked.parts)
+    coil, said = wanted_coil(job, asked.coil_volts)
+    order = Order(coil, said, asked.spares, asked.repeaters, _SOLVER_SECONDS)
+    return Drawer(parts, order, dict(map(_had, asked.have)), tuple(asked.buy))
+
+
+def _had(text: str) -> tuple[str, Contacts | None]:
+    """`UP` or `UP=2C`: a relay that is there already, with its contacts."""
+    from contactlogic.purchase.parts import Contacts
+
+    name, equals, form = text.partition("=")
+    if not equals:
+        return name.strip(), None
+    stated = re.findall("([0-9]{0,2})([ABCD])", form.upper())
+    if not stated or "".join(number + letter for number, letter in stated) != form.upper():
+        raise PartsError(
+            f"--have {text} is not clear",
+            expected="a relay such as UP, or a relay and its contacts such as UP=2C or UP=1A1B",
+        )
+    counts = dict.fromkeys("ABCD", 0)
+    for number, letter in stated:
+        counts[letter] += int(number or 1)
+    return name.strip(), Contacts(*counts.values())
+
+
+def _files(found: _Found) -> dict[str, bytes]:
+    from contactlogic.report.purchase import purchase_csv, schedule_csv
+
+    files = {"design.json": found.design_file}
+    for schedule in found.schedules:
+        form = schedule.design.form
+        files[f"{form}/schedule.csv"] = schedule_csv(schedule, found.title).encode()
+        if schedule.purchase is not None:
+            files[f"{form}/purchase.csv"] = purchase_csv(schedule, found.title).encode()
+    return files
+
+
+def _kept(folder: Path, design_file: bytes) -> dict[str, bytes]:
+    """Papers of the very same designs that lie in the folder already: they stay."""
+    from contactlogic.report.folder import FORMS
+
+    try:
+        if (folder / "design.json").read_bytes() != design_file:
+            return {}
+    except OSError:
+        return {}
+    places = [folder, *(folder / form for form in FORMS)]
+    files = [file for place in places if place.is_dir() for file in place.iterdir()]
+    return {
+        file.relative_to(folder).as_posix(): file.read_bytes()
+        for file in sorted(files)
+        if file.is_file() and not file.is_symlink()
+    }
