@@ -17,6 +17,7 @@ from contactlogic.errors import InternalError
 __all__ = ["Bound", "Program", "Solution", "solve", "solved"]
 
 _GRACE = 5.0  # seconds for starting the solver and bringing its answer back
+_SMALL = 20_000  # variables times bounds; up to here a child's start takes longer than solving
 
 
 @dataclass(frozen=True)
@@ -57,9 +58,9 @@ class Solution:
 
 
 def solved(program: Program, seconds: float | None) -> Solution:
-    """`solve` in a child process that is ended when time is up; in this process if it is None."""
-    if seconds is None:
-        found = solve(program, None)
+    """`solve` within a time limit (None for none), anything large in a child process."""
+    if seconds is None or len(program.most) * len(program.bounds) <= _SMALL:
+        found = solve(program, seconds)
     else:
         try:
             found = run(solve, program, seconds, seconds=seconds + _GRACE)

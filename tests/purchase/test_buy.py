@@ -12,6 +12,7 @@ from hypothesis import strategies as st
 
 from contactlogic.errors import PartsError
 from contactlogic.network import Network, Pole
+from contactlogic.purchase import program
 from contactlogic.purchase.buy import Order, Purchase, buy
 from contactlogic.purchase.needs import Need, PoleNeed, needs_of
 from contactlogic.purchase.parts import Coil, Contacts, Part, PartsList
@@ -329,7 +330,8 @@ def test_nothing_is_bought_for_nothing() -> None:
     assert (found.units, found.items, found.price) == ((), (), 0)
 
 
-def test_the_child_process_finds_the_same() -> None:
+def test_the_child_process_finds_the_same(monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setattr(program, "_SMALL", 0)
     both = [need("K1", "changeover", "make"), need("K2", "break")]
     parts = listed(part("two", "3.00", c=2, stock=1), part("one", "2.00", c=1))
     assert buy(both, parts, Order(D24, seconds=30.0)) == buy(both, parts, Order(D24))
