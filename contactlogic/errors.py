@@ -8,6 +8,7 @@
     │   │   ├── FormulaError       switching algebra that does not parse or names no relay
     │   │   └── LimitError         too many inputs, a pole budget that cannot be met
     │   ├── DesignFileError        a design.json that does not keep the contract
+    │   ├── WiringError            a list of wires that cannot be traced
     │   ├── PartsError             a parts list that cannot be used, or does not hold what is needed
     │   └── OutputError            a folder that cannot or must not be written
     ├── NotALadder                 a network that cannot be drawn as a ladder
@@ -41,6 +42,7 @@ __all__ = [
     "RenderError",
     "RendererMissing",
     "TableError",
+    "WiringError",
 ]
 
 
@@ -141,6 +143,10 @@ class LimitError(JobError):
 
 class DesignFileError(InputError):
     """A design file that does not keep the `contactlogic/design/1` contract."""
+
+
+class WiringError(InputError):
+    """A list of wires that cannot be traced: a line, a terminal or a rail that is not clear."""
 
 
 class PartsError(InputError):
