@@ -127,7 +127,7 @@ def buy(
     bounds: list[int] = []
     proved = True
     for coil, offered in groups or [(None, [])]:
-        table = _Table(needs, offered, order)
+        table = _Table(needs, _worth_a_look(offered, needs, order), order)
         found = solved(table.program(), order.seconds)
         if not found.feasible:
             continue
@@ -189,6 +189,33 @@ def _coil_groups(
         near = (coil, Coil(coil.volts))
         groups.append((coil, [part for part in parts if part.coil in near]))
     return groups
+
+
+def _worth_a_look(parts: Sequence[Part], needs: Sequence[Need], order: Order) -> list[Part]:
+    """Parts but for those in whose place another one can always be bought for less.
+
+    That other one can do whatever the part can, and there are enough of it for everything.
+    """
+    most = sum(len(need.poles) for need in needs)
+    most += -(-most * order.spares // 100)
+
+    def better(one: Part, two: Part) -> bool:
+        cheaper = one.price < two.price or (
+            one.price == two.price
+            and one.contacts == two.contacts
+            and parts.index(one) < parts.index(two)
+        )
+        plenty = one.stock is None or one.stock >= most
+        strong = one.amps is None or (two.amps is not None and one.amps >= two.amps)
+        return cheaper and plenty and strong and _stands_in(one.contacts, two.contacts)
+
+    return [part for part in parts if not any(better(other, part) for other in parts)]
+
+
+def _stands_in(one: Contacts, two: Contacts) -> bool:
+    """Whether contacts can take over whatever others can: changeovers stand in for any."""
+    missing = sum(max(0, two.of(form) - one.of(form)) for form in FORMS if form != "C")
+    return one.c - two.c >= missing
 
 
 class _Table:

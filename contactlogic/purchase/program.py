@@ -97,6 +97,7 @@ def solve(program: Program, seconds: float | None) -> Solution:
         settings = mathopt.SolveParameters(
             threads=1, random_seed=0, relative_gap_tolerance=0.0, absolute_gap_tolerance=0.0
         )
+        settings.cp_sat.linearization_level = 2  # without it small programs take minutes
         if end is not None:
             settings.time_limit = timedelta(seconds=max(0.1, end - monotonic()))
         answer = mathopt.solve(model, mathopt.SolverType.CP_SAT, params=settings)
