@@ -1,19 +1,21 @@
-"""Order and pairing together, by constraint programming, so that the poles are fewest.
+"""Order and pairing together, by integer programming, so that the poles are fewest.
 
-The order inside every series is a Hamiltonian circuit through its parts and a marker for its ends;
-which contacts then meet at a net follows from who is first, last and next to whom.  A make and a
-break of one relay that meet may pair, each at most once, over all rungs at once (rungs meet at the
-supply rail and at shared joints).  Solved by the CP-SAT solver of OR-Tools with a limit in its own
-deterministic time, one worker and a fixed seed, so that equal input gives an equal answer.
+The order inside every series is a Hamiltonian circuit through its parts and a marker for its ends,
+kept whole as Miller, Tucker and Zemlin do ("Integer programming formulation of traveling salesman
+problems", 1960); which contacts then meet at a net follows from who is first, last and next to
+whom.  A make and a break of one relay that meet may pair, each at most once, over all rungs at once
+(rungs meet at the supply rail and at shared joints).  An integer program (`integer`) with a limit
+in the engine's deterministic time, so that equal input gives an equal answer.
 """
 
 from __future__ import annotations
 
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
-from itertools import combinations
+from itertools import combinations, permutations
 from typing import Any
 
+from contactlogic.integer import Program
 from contactlogic.ladder.plan import Branch, Plan
 from contactlogic.ladder.tree import Leaf, Series, Tree, leaves
 
@@ -48,14 +50,12 @@ Chain = tuple[Any, ...]  # conditions (solver literals) that must hold together
 
 
 class _Model:
-    """One plan as a CP-SAT model."""
+    """One plan as an integer program."""
 
-    def __init__(self, plan: Plan, rules: Rules) -> None:
-        from ortools.sat.python import cp_model
-
+    def __init__(self, plan: Plan, rules: Rules, effort: float, seed: int) -> None:
         self.plan = plan
         self.rules = rules
-        self.engine = cp_model.CpModel()
+        self.program = Program(seed=seed, effort=effort)
         self.next_to: dict[Path, dict[tuple[int, int], Any]] = {}
         self.leaf: dict[Path, Leaf] = {}
         self.options: dict[tuple[Path, Path], list[Any]] = {}
@@ -97,13 +97,14 @@ class _Model:
 
     def _order(self, path: Path, count: int) -> dict[tuple[int, int], Any]:
         places = (_END, *range(count))
-        arcs = {
-            (i, j): self.engine.new_bool_var(f"{path}:{i}>{j}")
-            for i in places
-            for j in places
-            if i != j
-        }
-        self.engine.add_circuit([(i + 1, j + 1, var) for (i, j), var in arcs.items()])
+        arcs = {(i, j): self.program.binary() for i in places for j in places if i != j}
+        for i in places:
+            self.program.add(sum(arcs[i, j] for j in places if i != j) == 1)
+            self.program.add(sum(arcs[j, i] for j in places if i != j) == 1)
+        if count > 2:  # two parts cannot form a circuit that leaves the ends out
+            turn = [self.program.integer(0, count - 1) for _ in range(count)]
+            for i, j in permutations(range(count), 2):
+                self.program.add(turn[j] - turn[i] + count * (1 - arcs[i, j]) >= 1)
         self.next_to[path] = arcs
         return arcs
 
@@ -114,19 +115,19 @@ class _Model:
                 a, b = self.leaf[p], self.leaf[q]
                 if a.relay != b.relay or a.make == b.make or a.relay in self.rules.separate:
                     continue
-                chosen = self.engine.new_bool_var("")
+                chosen = self.program.binary()
                 for condition in (*chain, *more, *extra):
-                    self.engine.add_implication(chosen, condition)
+                    self.program.add(chosen <= condition)
                 self.uses[p].append(chosen)
                 self.uses[q].append(chosen)
                 self.options.setdefault((min(p, q), max(p, q)), []).append(chosen)
 
-    def solve(self, effort: float, seed: int) -> Arrangement | None:
-        """The best order found within `effort` (deterministic seconds), None if there is none."""
-        from ortools.sat.python import cp_model
-
+    def solve(self) -> Arrangement | None:
+        """The best order found, None if there is none."""
+        program = self.program
         for choices in self.uses.values():
-            self.engine.add_at_most_one(choices)
+            if choices:
+                program.add(sum(choices) <= 1)
         contacts: dict[int, int] = {}
         for leaf in self.leaf.values():
             contacts[leaf.relay] = contacts.get(leaf.relay, 0) + 1
@@ -134,43 +135,38 @@ class _Model:
         for (p, _), choices in self.options.items():
             pairs[self.leaf[p].relay] += choices
         budgets = self.rules.poles or {}
-        busiest = self.engine.new_int_var(0, max(contacts.values(), default=0), "busiest")
+        busiest = program.integer(0, max(contacts.values(), default=0))
         for relay, count in sorted(contacts.items()):
             poles = count - sum(pairs[relay])
-            self.engine.add(busiest >= poles)
+            program.add(busiest >= poles)
             if relay in budgets:
-                self.engine.add(poles <= budgets[relay])
+                program.add(poles <= budgets[relay])
         total = sum(contacts.values()) - sum(sum(pairs[relay]) for relay in sorted(pairs))
         weight = max(contacts.values(), default=0) + 1
-        self.engine.minimize(total * weight + busiest)
-        solver = cp_model.CpSolver()
-        solver.parameters.num_workers = 1
-        solver.parameters.random_seed = seed
-        solver.parameters.max_deterministic_time = effort
-        status = solver.solve(self.engine)
-        if status not in (cp_model.OPTIMAL, cp_model.FEASIBLE):
+        program.minimize(total * weight + busiest)
+        if not program.solve():
             return None
         ordered = Plan(
             tuple(
-                Branch(b.start, b.end, self._ordered(solver, b.tree, (i,)))
+                Branch(b.start, b.end, self._ordered(b.tree, (i,)))
                 for i, b in enumerate(self.plan.branches)
             ),
             self.plan.loads,
         )
-        poles_found = round(solver.objective_value) // weight
-        least = int(solver.best_objective_bound + weight - 1e-6) // weight >= poles_found
-        return Arrangement(ordered, poles_found, least or status == cp_model.OPTIMAL)
+        found = program.cost // weight
+        return Arrangement(ordered, found, program.at_least // weight >= found)
 
-    def _ordered(self, solver: Any, tree: Tree, path: Path) -> Tree:
+    def _ordered(self, tree: Tree, path: Path) -> Tree:
         if isinstance(tree, Leaf):
             return tree
-        parts = [self._ordered(solver, part, (*path, i)) for i, part in enumerate(tree.parts)]
+        parts = [self._ordered(part, (*path, i)) for i, part in enumerate(tree.parts)]
         if not isinstance(tree, Series):
             return type(tree)(tuple(parts))
-        return Series(tuple(parts[i] for i in self._walk(solver, path)))
+        return Series(tuple(parts[i] for i in self._walk(path)))
 
-    def _walk(self, solver: Any, path: Path) -> Iterator[int]:
-        following = {i: j for (i, j), var in self.next_to[path].items() if solver.value(var)}
+    def _walk(self, path: Path) -> Iterator[int]:
+        value = self.program.value
+        following = {i: j for (i, j), var in self.next_to[path].items() if value(var)}
         here = following[_END]
         while here != _END:
             yield here
@@ -188,4 +184,4 @@ def arrange(plan: Plan, rules: Rules, *, effort: float = 5.0, seed: int = 0) -> 
     """
     if not any(True for branch in plan.branches for _ in leaves(branch.tree)):
         return Arrangement(plan, 0, True)
-    return _Model(plan, rules).solve(effort, seed)
+    return _Model(plan, rules, effort, seed).solve()

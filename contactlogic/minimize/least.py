@@ -4,9 +4,7 @@ The covering table is reduced (`covering`), and what is left to choose is an int
 0/1 variable a cube, one row "at least one of these" an on row) that CP-SAT solves.  Literals and
 terms are one objective: a literal weighs more than all terms of any irredundant cover together.
 
-CP-SAT was chosen by measurement (tests/bench/bench_cover.py) over RC2 MaxSAT, SCIP and HiGHS; it
-needs its linear relaxation at full strength, without which it is the slowest.  It is reached
-through `pywraplp`, which starts in a fifth of the time of the engine's own Python layer.
+CP-SAT was chosen by measurement (tests/bench/bench_cover.py) over RC2 MaxSAT, SCIP and HiGHS.
 
 Up to `IN_PROCESS_INPUTS` inputs the tables are so small (some hundred columns) that a child's
 start would cost more than the choice; above that the engine runs in a child.
@@ -18,6 +16,7 @@ import time
 from dataclasses import dataclass
 
 from contactlogic.child import ChildCrashed, ChildTimedOut, run
+from contactlogic.integer import Program
 from contactlogic.minimize.covering import Choice, reduce_table
 from contactlogic.minimize.cube import Cube
 from contactlogic.minimize.primes import primes
@@ -79,43 +78,33 @@ def choose(
 
     `seconds` bounds the first set (None: no limit), `more_seconds` the first and all others.
     """
-    from ortools.linear_solver import pywraplp
-
     end = time.monotonic() + more_seconds
     scale = len(choice.rows) + 1  # an irredundant set has no more columns than rows
     weights = [cube.literals * scale + 1 for cube in choice.columns]
-    solver = pywraplp.Solver.CreateSolver("SAT")
-    solver.SetSolverSpecificParametersAsString(
-        f"num_workers:1 linearization_level:2 random_seed:{seed % 2**31}"
-    )
-    exactly = pywraplp.MPSolverParameters()
-    exactly.SetDoubleParam(exactly.RELATIVE_MIP_GAP, 0.0)  # by default it stops 1e-4 short of proof
-    used = [solver.BoolVar("") for _ in choice.columns]
+    program = Program(seed=seed)
+    used = [program.binary() for _ in choice.columns]
+    total = sum(weight * use for weight, use in zip(weights, used, strict=True))
     for row in choice.rows:
-        solver.Add(sum(used[column] for column in row) >= 1)
-    solver.Minimize(sum(weight * use for weight, use in zip(weights, used, strict=True)))
-    if seconds is not None:
-        solver.SetTimeLimit(max(1, int(seconds * 1000)))
-    status = solver.Solve(exactly)
-    if status not in (solver.OPTIMAL, solver.FEASIBLE):
+        program.add(sum(used[column] for column in row) >= 1)
+    program.minimize(total)
+    if not program.solve(seconds):
         return (), False
-    answers = [_columns(used)]
+    answers = [_columns(program, used)]
     cost = sum(weights[column] for column in answers[0])
-    if status != solver.OPTIMAL or solver.Objective().BestBound() <= cost - 0.5:
+    if program.at_least < cost:
         return tuple(answers), False
-    solver.Add(sum(weight * use for weight, use in zip(weights, used, strict=True)) <= cost)
+    program.add(total <= cost)
     while len(answers) < alternatives:
         left = end - time.monotonic()
         if left <= 0:
             break
         # not the last one again; no set of the same cost can contain it
-        solver.Add(sum(used[column] for column in answers[-1]) <= len(answers[-1]) - 1)
-        solver.SetTimeLimit(max(1, int(left * 1000)))
-        if solver.Solve(exactly) not in (solver.OPTIMAL, solver.FEASIBLE):
+        program.add(sum(used[column] for column in answers[-1]) <= len(answers[-1]) - 1)
+        if not program.solve(left):
             break
-        answers.append(_columns(used))
+        answers.append(_columns(program, used))
     return tuple(answers), True
 
 
-def _columns(used: list) -> tuple[int, ...]:  # type: ignore[type-arg]
-    return tuple(column for column, use in enumerate(used) if use.solution_value() > 0.5)
+def _columns(program: Program, used: list) -> tuple[int, ...]:  # type: ignore[type-arg]
+    return tuple(column for column, use in enumerate(used) if program.value(use))

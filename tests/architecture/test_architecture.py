@@ -20,7 +20,7 @@ from contactlogic import errors
 ROOT = Path(contactlogic.__file__).parent
 
 LAYERS = (
-    {"truth", "errors", "child", "naming", "algebra", "workbook"},
+    {"truth", "errors", "child", "integer", "naming", "algebra", "workbook"},
     {"formula", "job", "network", "design", "terminals"},
     {"check", "minimize", "ladder", "search", "sequence", "hazard", "fault", "commission"},
     {"synthesis"},
