@@ -26,7 +26,14 @@ from contactlogic.sequence.wants import drive_targets, load_targets
 from contactlogic.synthesis import Search, synthesise
 from contactlogic.truth import Target
 
-__all__ = ["MOST_RELAYS", "SequencerResult", "as_table_job", "expanded", "table_job", "wire_sequence"]
+__all__ = [
+    "MOST_RELAYS",
+    "SequencerResult",
+    "as_table_job",
+    "expanded",
+    "table_job",
+    "wire_sequence",
+]
 
 MOST_RELAYS = 10
 """Most relays and inputs of a sequence that is wired; recovery is proved of far more."""
@@ -77,7 +84,9 @@ def table_job(job: SequenceJob, expansion: Expansion) -> Job:
         job.supply,
         job.limits,
         job.file,
-        frozenset(n for n in expansion.relays if n in timing.slow_release + timing.slow_operate),
+        frozenset(n for n in expansion.relays if n in timing.slow_release + timing.slow_operate)
+        | job.bench.stored,
+        job.bench,
     )
 
 

@@ -15,12 +15,12 @@ from typing import Any, get_args
 from contactlogic.errors import FormulaError, JobFileError, Place
 from contactlogic.formula import Expression, evaluate, names, parse
 from contactlogic.job.model import AnyJob, Job, Load, LoadFacts
+from contactlogic.job.read_bench import read_bench
 from contactlogic.job.read_drives import read_drives_job
 from contactlogic.job.read_sequence import read_pattern_job, read_sequence_job
 from contactlogic.job.schema import read_job_file
 from contactlogic.job.sections import (
     formula_places,
-    read_facts,
     read_limits,
     supply_of,
     title_of,
@@ -91,7 +91,8 @@ def _table_job(data: Any, text: str, file: Path, place: Place) -> Job:
     }
     for name, expression in expressions.items():
         targets[name] = Target(n, evaluate(expression, relays))
-    facts = read_facts(data.loads, targets, text, place)
+    named = tuple(targets)
+    facts, bench = read_bench(data, named, relays, named, text, place)
     loads = []
     for name, target in targets.items():
         known = facts.get(name, LoadFacts())
@@ -104,6 +105,8 @@ def _table_job(data: Any, text: str, file: Path, place: Place) -> Job:
         supply_of(data),
         read_limits(data.limits, relays, "input relay", text, place),
         place.file,
+        bench.stored,
+        bench,
     )
 
 

@@ -16,7 +16,9 @@ from contactlogic.truth import Target
 
 __all__ = [
     "AnyJob",
+    "Bench",
     "DrivesJob",
+    "Fittings",
     "Isolate",
     "Job",
     "Limits",
@@ -25,14 +27,17 @@ __all__ = [
     "LoadKind",
     "Objective",
     "PatternJob",
+    "Position",
     "SeparateContacts",
     "SequenceJob",
     "Supply",
+    "Suppression",
 ]
 
 LoadKind = Literal["lamp", "horn", "valve", "coil", "motor", "other"]
 Isolate = Literal["stored", "all", "none"]
 Objective = Literal["poles", "contacts"]
+Suppression = Literal["diode", "zener", "varistor", "rc", "tvs"]
 
 
 @dataclass(frozen=True)
@@ -59,6 +64,66 @@ class LoadFacts:
 
 
 @dataclass(frozen=True)
+class Fittings:
+    """Parts fitted at a load or coil, None where the job states none.
+
+    Args:
+        fuse: its rating, `2 A`; in series with the load.
+        suppression: what limits the voltage when the load is switched off; across it.
+        hold: a capacitor across the coil, `470 uF`.
+        series: a resistor, `100 ohm`: in series with the capacitor, or without one with the coil.
+    """
+
+    fuse: str | None = None
+    suppression: Suppression | None = None
+    hold: str | None = None
+    series: str | None = None
+
+    def texts(self) -> tuple[str, ...]:
+        """Each part in a few words, as drawings and lists name them."""
+        said = []
+        if self.fuse is not None:
+            said.append(f"fuse {self.fuse}")
+        if self.series is not None:
+            said.append(f"series {self.series}")
+        if self.hold is not None:
+            said.append(f"hold {self.hold}")
+        if self.suppression is not None:
+            said.append(self.suppression)
+        return tuple(said)
+
+
+@dataclass(frozen=True)
+class Position:
+    """Where a relay or load sits: rows and columns are the steps that wires are measured in."""
+
+    row: float
+    column: float
+
+
+@dataclass(frozen=True)
+class Bench:
+    """What the job states of the panel: parts at loads and coils, and where things sit.
+
+    Args:
+        fittings: by the name of the load or coil.
+        places: position of relays and loads, by name.
+        feed: position of the feed rail's terminal.
+        back: position of the return rail's terminal.
+    """
+
+    fittings: Mapping[str, Fittings] = field(default_factory=dict)
+    places: Mapping[str, Position] = field(default_factory=dict)
+    feed: Position | None = None
+    back: Position | None = None
+
+    @property
+    def stored(self) -> frozenset[str]:
+        """Loads and coils with a capacitor, which discharges into whatever they are joined to."""
+        return frozenset(name for name, parts in self.fittings.items() if parts.hold is not None)
+
+
+@dataclass(frozen=True)
 class Supply:
     """Labels of the two rails, and the voltage that coils are rated for; None where not given."""
 
@@ -77,12 +142,13 @@ class SeparateContacts:
 
 @dataclass(frozen=True)
 class Limits:
-    """What the wiring must keep to."""
+    """What the wiring must keep to; `guided` relays have forcibly guided contacts."""
 
     poles: Mapping[str, int] = field(default_factory=dict)
     contacts: Mapping[str, SeparateContacts] = field(default_factory=dict)
     isolate: Isolate = "stored"
     objective: Objective = "poles"
+    guided: tuple[str, ...] = ()
 
 
 @dataclass(frozen=True)
@@ -96,6 +162,7 @@ class Job:
         listed: truth table of the rows that the table lists (all rows if there is no table).
         file: name shown in messages and reports, None if made in code.
         stored: loads that store energy, such as slow coils with their capacitors.
+        bench: parts at loads and coils, and positions.
     """
 
     title: str
@@ -106,6 +173,7 @@ class Job:
     limits: Limits = field(default_factory=Limits)
     file: str | None = None
     stored: frozenset[str] = frozenset()
+    bench: Bench = field(default_factory=Bench)
 
     @property
     def targets(self) -> dict[str, Target]:
@@ -134,20 +202,22 @@ class SequenceJob:
     facts: Mapping[str, LoadFacts] = field(default_factory=dict)
     limits: Limits = field(default_factory=Limits)
     file: str | None = None
+    bench: Bench = field(default_factory=Bench)
 
     @property
     def isolated(self) -> frozenset[str]:
         """Coils and loads whose net may never be joined to another that is off (section 3).
 
-        By default the coils of slow relays, for their capacitors.  Relays that are added later
-        are quick; where all are isolated, so must they be.
+        By default the coils of slow relays and of others with a capacitor.  Relays that are added
+        later are quick; where all are isolated, so must they be.
         """
         if self.limits.isolate == "all":
             coils = set(self.table.columns) - set(self.table.inputs)
             return frozenset({*coils, *self.table.loads})
         if self.limits.isolate == "none":
             return frozenset()
-        return frozenset({*self.table.timing.slow_release, *self.table.timing.slow_operate})
+        timing = self.table.timing
+        return frozenset({*timing.slow_release, *timing.slow_operate}) | self.bench.stored
 
 
 @dataclass(frozen=True)
@@ -160,6 +230,7 @@ class PatternJob:
     facts: Mapping[str, LoadFacts] = field(default_factory=dict)
     limits: Limits = field(default_factory=Limits)
     file: str | None = None
+    bench: Bench = field(default_factory=Bench)
 
 
 @dataclass(frozen=True)
@@ -184,6 +255,7 @@ class DrivesJob:
     facts: Mapping[str, LoadFacts] = field(default_factory=dict)
     limits: Limits = field(default_factory=Limits)
     file: str | None = None
+    bench: Bench = field(default_factory=Bench)
 
     @property
     def inputs(self) -> tuple[str, ...]:

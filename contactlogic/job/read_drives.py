@@ -14,6 +14,7 @@ from typing import Any
 from contactlogic.errors import FormulaError, JobFileError, Place, TableError
 from contactlogic.formula import Expression, names, parse
 from contactlogic.job.model import DrivesJob
+from contactlogic.job.read_bench import read_bench
 from contactlogic.job.read_sequence import (
     MOST_COLUMNS,
     sequence_table,
@@ -23,7 +24,6 @@ from contactlogic.job.read_sequence import (
 )
 from contactlogic.job.sections import (
     formula_places,
-    read_facts,
     read_limits,
     supply_of,
     title_of,
@@ -48,6 +48,8 @@ def read_drives_job(data: Any, text: str, file: Path, place: Place) -> DrivesJob
         table = replace(sequence_table(data, text, place), memory="forbidden")
         timing, columns = table.timing, table.columns
         _check_drives(table, drives, data.drives, places)
+    named = (*drives, *(table.loads if table else ()))
+    facts, bench = read_bench(data, named, columns, tuple(drives), text, place)
     return DrivesJob(
         title_of(data, file),
         columns,
@@ -56,9 +58,10 @@ def read_drives_job(data: Any, text: str, file: Path, place: Place) -> DrivesJob
         timing,
         table,
         supply_of(data),
-        read_facts(data.loads, (*drives, *(table.loads if table else ())), text, place),
+        facts,
         read_limits(data.limits, columns, "relay", text, place),
         place.file,
+        bench,
     )
 
 

@@ -9,7 +9,8 @@ from typing import Any
 
 from contactlogic.errors import LimitError, Place, TableError
 from contactlogic.job.model import PatternJob, SequenceJob
-from contactlogic.job.sections import read_facts, read_limits, supply_of, title_of
+from contactlogic.job.read_bench import read_bench
+from contactlogic.job.sections import read_limits, split_names, supply_of, title_of
 from contactlogic.job.sequence import (
     Branch,
     Pattern,
@@ -27,7 +28,6 @@ __all__ = [
     "read_pattern_job",
     "read_sequence_job",
     "sequence_table",
-    "split_names",
     "timing_of",
     "timing_places",
     "too_many_columns",
@@ -43,13 +43,15 @@ def read_sequence_job(data: Any, text: str, file: Path, place: Place) -> Sequenc
     """The job of a file with a [sequence] and no drives."""
     table = sequence_table(data, text, place)
     coils = [name for name in table.columns if name not in table.inputs]
+    facts, bench = read_bench(data, (*coils, *table.loads), table.columns, coils, text, place)
     return SequenceJob(
         title_of(data, file),
         table,
         supply_of(data),
-        read_facts(data.loads, (*coils, *table.loads), text, place),
+        facts,
         read_limits(data.limits, table.columns, "relay", text, place),
         place.file,
+        bench,
     )
 
 
@@ -73,13 +75,15 @@ def read_pattern_job(data: Any, text: str, file: Path, place: Place) -> PatternJ
             place=where,
             expected="a row for each step, in order",
         )
+    facts, bench = read_bench(data, loads, (), None, text, place)
     return PatternJob(
         title_of(data, file),
         Pattern(loads, tuple(rows), given.step, place.file),
         supply_of(data),
-        read_facts(data.loads, loads, text, place),
+        facts,
         read_limits(data.limits, None, "relay", text, place),
         place.file,
+        bench,
     )
 
 
@@ -137,11 +141,6 @@ def timing_places(data: Any, text: str, place: Place) -> dict[str, Place]:
         key: _place_of_text(text, "timing", key, getattr(data, key), where)
         for key in ("slow_release", "slow_operate")
     }
-
-
-def split_names(text: str) -> tuple[str, ...]:
-    """Names divided by spaces or commas."""
-    return tuple(text.replace(",", " ").split())
 
 
 def too_many_columns(count: int, place: Place) -> LimitError:

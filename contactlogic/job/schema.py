@@ -9,7 +9,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 from contactlogic.errors import JobFileError, Place
-from contactlogic.job.model import Isolate, LoadKind, Objective
+from contactlogic.job.model import Isolate, LoadKind, Objective, Suppression
 from contactlogic.job.sequence import Memory, Stepping
 from contactlogic.job.table import Unlisted
 from contactlogic.job.tomlfile import place_of_key, read_toml
@@ -69,6 +69,19 @@ _EXPECTED = {
     "loads.*": '{ kind = "lamp", amps = 0.2 }',
     "loads.*.kind": '"lamp", "horn", "valve", "coil", "motor" or "other"',
     "loads.*.amps": "a number above 0",
+    "loads.*.fuse": 'a rating such as "2 A" or "T 500 mA"',
+    "loads.*.suppression": '"diode", "zener", "varistor", "rc" or "tvs"',
+    "coils": "a section [coils]",
+    "coils.*": '{ hold = "470 uF", series = "100 ohm", suppression = "diode" }',
+    "coils.*.amps": "a number above 0",
+    "coils.*.fuse": 'a rating such as "2 A" or "T 500 mA"',
+    "coils.*.suppression": '"diode", "zener", "varistor", "rc" or "tvs"',
+    "coils.*.hold": 'a capacitor such as "470 uF"',
+    "coils.*.series": 'a resistor such as "100 ohm" or "4k7"',
+    "panel": "a section [panel]",
+    "panel.*": "{ row = 1, column = 2 }",
+    "panel.*.row": "a number from -1000 to 1000",
+    "panel.*.column": "a number from -1000 to 1000",
     "limits": "a section [limits]",
     "limits.poles": "poles per relay, such as { UP = 2 }",
     "limits.poles.*": "a whole number from 0 to 1000",
@@ -76,6 +89,7 @@ _EXPECTED = {
     "limits.contacts.*": 'makes (A) and breaks (B), such as "1A1B", "2A" or "1B"',
     "limits.isolate": '"stored", "all" or "none"',
     "limits.objective": '"poles" or "contacts"',
+    "limits.guided": 'relays with forcibly guided contacts, such as "UP DOWN"; "" for none',
 }
 """What belongs at each key; `*` stands for the user's own names."""
 
@@ -162,10 +176,11 @@ def _unknown_key(path: list[str], pattern: str, is_section: bool, where: Place) 
     """The refusal of a key that is none, with where it belongs if it is known elsewhere."""
     key = path[-1]
     allowed = _keys_under(_pattern(path[:-1]))
+    others = [known for known in _EXPECTED if known.endswith("." + key) and known != pattern]
+    belongs = f"{key} belongs in [{others[0].split('.')[0]}]" if others else None
     hint = did_you_mean(key, allowed)
-    if hint is None:
-        others = [known for known in _EXPECTED if known.endswith("." + key) and known != pattern]
-        hint = f"{key} belongs in [{others[0].split('.')[0]}]" if others else None
+    if hint is None or len(path) == 1:  # a key above all sections has most likely lost its own
+        hint = belongs or hint
     what = f"there is no key {shortened(key)}"
     if len(path) == 1 and is_section:
         what = f"there is no section [{shortened(key)}]"
@@ -190,7 +205,7 @@ def _value(value: Any) -> str:
 def _pattern(path: list[str]) -> str:
     """The key's place with the user's own names as `*`."""
     parts = list(path)
-    if parts[:1] in (["formulas"], ["loads"], ["drives"]) and len(parts) > 1:
+    if parts[:1] in (["formulas"], ["loads"], ["drives"], ["coils"], ["panel"]) and len(parts) > 1:
         parts[1] = "*"
     if parts[:2] in (["limits", "poles"], ["limits", "contacts"]) and len(parts) > 2:
         parts[2] = "*"
@@ -258,12 +273,26 @@ def _model() -> type[BaseModel]:
     class LoadFacts(Strict):
         kind: LoadKind | None = None
         amps: Annotated[float, Field(gt=0, allow_inf_nan=False)] | None = None
+        fuse: str | None = None
+        suppression: Suppression | None = None
+
+    class CoilFacts(Strict):
+        amps: Annotated[float, Field(gt=0, allow_inf_nan=False)] | None = None
+        fuse: str | None = None
+        suppression: Suppression | None = None
+        hold: str | None = None
+        series: str | None = None
+
+    class Seat(Strict):
+        row: Annotated[float, Field(ge=-1000, le=1000)]
+        column: Annotated[float, Field(ge=-1000, le=1000)]
 
     class Limits(Strict):
         poles: dict[str, Annotated[int, Field(ge=0, le=1000)]] = Field(default_factory=dict)
         contacts: dict[str, Separate] = Field(default_factory=dict)
         isolate: Isolate = "stored"
         objective: Objective = "poles"
+        guided: str = ""
 
     class JobFile(Strict):
         title: str | None = None
@@ -275,6 +304,8 @@ def _model() -> type[BaseModel]:
         pattern: Pattern | None = None
         supply: Supply = Supply()
         loads: dict[str, LoadFacts] = Field(default_factory=dict)
+        coils: dict[str, CoilFacts] = Field(default_factory=dict)
+        panel: dict[str, Seat] = Field(default_factory=dict)
         limits: Limits = Limits()
 
     return JobFile

@@ -14,7 +14,15 @@ from contactlogic.job.table import MOST_LOADS
 from contactlogic.job.tomlfile import key_lines, place_of_key
 from contactlogic.naming import check_names, did_you_mean, is_name, listed
 
-__all__ = ["check_known", "formula_places", "read_facts", "read_limits", "supply_of", "title_of"]
+__all__ = [
+    "check_known",
+    "formula_places",
+    "read_facts",
+    "read_limits",
+    "split_names",
+    "supply_of",
+    "title_of",
+]
 
 _MOST_FORMULA_CHARACTERS = 200_000  # of all formulas together; some ten seconds of reading
 
@@ -78,6 +86,11 @@ def check_known(
             )
 
 
+def split_names(text: str) -> tuple[str, ...]:
+    """Names divided by spaces or commas."""
+    return tuple(text.replace(",", " ").split())
+
+
 def read_limits(
     data: Any, relays: Sequence[str] | None, what: str, text: str, place: Place
 ) -> Limits:
@@ -90,8 +103,11 @@ def read_limits(
     if relays is not None:
         check_known(data.poles, relays, what, ["limits", "poles"], text, place)
         check_known(data.contacts, relays, what, ["limits", "contacts"], text, place)
+    guided = tuple(dict.fromkeys(split_names(data.guided)))
+    if relays is not None:
+        check_known(guided, relays, what, ["limits", "guided"], text, place)
     separate = {}
     for name, form in data.contacts.items():
         counts = {letter: int(number) for number, letter in re.findall("([0-9]+)([AB])", form)}
         separate[name] = SeparateContacts(counts.get("A", 0), counts.get("B", 0))
-    return Limits(dict(data.poles), separate, data.isolate, data.objective)
+    return Limits(dict(data.poles), separate, data.isolate, data.objective, guided)

@@ -47,7 +47,7 @@ def sequence_of(job: PatternJob) -> tuple[SequenceJob, PatternChoice]:
         JobFileError: limits of relays that were not chosen.
     """
     choice = choose_relays(job.pattern)
-    for name in (*job.limits.poles, *job.limits.contacts):
+    for name in (*job.limits.poles, *job.limits.contacts, *job.limits.guided):
         if name not in choice.table.columns:
             raise JobFileError(
                 f"there is no relay {name} among those chosen for the pattern",
@@ -55,7 +55,18 @@ def sequence_of(job: PatternJob) -> tuple[SequenceJob, PatternChoice]:
                 expected=listed(choice.table.columns),
                 hint=did_you_mean(name, choice.table.columns),
             )
-    made = SequenceJob(job.title, choice.table, job.supply, job.facts, job.limits, job.file)
+    chosen = (*choice.table.columns, *job.pattern.loads)
+    for name in (*job.bench.fittings, *job.bench.places):
+        if name not in chosen:
+            raise JobFileError(
+                f"there is no relay or load {name} in the pattern or chosen for it",
+                place=Place(job.file, "coils" if name in job.bench.fittings else "panel"),
+                expected=listed(chosen),
+                hint=did_you_mean(name, chosen),
+            )
+    made = SequenceJob(
+        job.title, choice.table, job.supply, job.facts, job.limits, job.file, job.bench
+    )
     return made, choice
 
 

@@ -131,6 +131,7 @@ TOML = {
     "formula: relay of the table in small letters": WHOLE + formulas(HORN="up"),
     "facts of an unknown load": formulas(LAMP="UP") + '[loads]\nLAMB = { kind = "lamp" }\n',
     "poles of an unknown relay": formulas(LAMP="UP DOWN") + "[limits]\npoles = { DWON = 2 }\n",
+    "guided contacts of an unknown relay": formulas(LAMP="UP") + '[limits]\nguided = "UP DWON"\n',
     "poles of a load": formulas(LAMP="UP") + "[limits]\npoles = { LAMP = 2 }\n",
     "contacts of an unknown relay": formulas(LAMP="START") + '[limits.contacts]\nSTRAT = "1A1B"\n',
     "a table file that is not there": in_file(),

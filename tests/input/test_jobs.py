@@ -39,6 +39,7 @@ SPARE = {}
 poles = { UP = 2, K7 = 0 }
 contacts = { DOWN = "1A1B", FLOOD = "2A", 1CR = "12B" }
 isolate = "all"
+guided = "UP"
 objective = "contacts"
 """
 
@@ -66,6 +67,7 @@ def test_every_section(tmp_path: Path) -> None:
         "1CR": SeparateContacts(0, 12),
     }  # fmt: skip
     assert (job.limits.isolate, job.limits.objective) == ("all", "contacts")
+    assert job.limits.guided == ("UP",)
     assert job.isolated == {"LAMP", "HORN", "BELL", "SPARE"}
 
 
