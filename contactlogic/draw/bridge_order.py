@@ -32,6 +32,7 @@ _TEE, _GAP, _BACK, _ORDER, _WIDE = 4.0, 1.5, 3.0, 2.5, 0.06
 _GAP_SIZE, _COLUMN_SIZE, _ROW_SIZE, _SHAPE = 75.0, 22.0, 62.0, 1.5  # about; width to height
 _SEED = 1938
 _RUNS, _MOST_RUNS = 4, 9  # small networks are cheap to run again
+_CROWDED, _CROWDED_RUNS = 120, 1  # parts and columns too many for a drawing that can be read
 _AGAIN, _SAME = 2, 1e-6  # runs that end at the same least cost are enough
 _HEAT, _NEARBY = 10.0, 0.7  # first temperature; share of moves that stay within three places
 # Steps of a run for each part and column, at most and for each of these; steps times these.
@@ -141,7 +142,7 @@ def arrange_parts(parts: Sequence[Part], nets: int) -> Arrangement:
     steps = min(_STEPS * size, _SMALL_STEPS * size * size, _MOST_WORK // size)
     potential = _potentials(parts, nets)
     found: list[_Layout] = []
-    for _ in range(max(_RUNS, _MOST_RUNS - size // 4)):
+    for _ in range(max(_RUNS, _MOST_RUNS - size // 4) if size < _CROWDED else _CROWDED_RUNS):
         found.append(_run(parts, potential, steps, random))
         layout = min(found, key=lambda layout: layout.cost)
         if sum(other.cost < layout.cost + _SAME for other in found) >= _AGAIN:

@@ -11,6 +11,7 @@ import shutil
 import subprocess
 import sys
 from collections.abc import Sequence
+from concurrent.futures import ThreadPoolExecutor
 from pathlib import Path
 
 from contactlogic.errors import RendererMissing, RenderError
@@ -18,6 +19,7 @@ from contactlogic.errors import RendererMissing, RenderError
 __all__ = ["find_renderer", "render"]
 
 PNG_DPI = 110
+_INCHES = 60  # a larger sheet is scaled down: pixels beyond that are of no use and take long
 
 
 def find_renderer() -> str | None:
@@ -37,7 +39,7 @@ def find_renderer() -> str | None:
 def render(
     dot_text: str, formats: Sequence[str] = ("svg", "png"), *, seconds: float = 60
 ) -> dict[str, bytes]:
-    """Pictures of a drawing by format.
+    """Pictures of a drawing by format, made side by side.
 
     Args:
         dot_text: a drawing with all positions fixed.
@@ -54,13 +56,18 @@ def render(
             "no renderer found: install the Python package graphviz-pure "
             "(pip install graphviz-pure), or Graphviz with its command dot"
         )
-    return {wanted: _picture(command, dot_text, wanted, seconds) for wanted in formats}
+
+    def picture(wanted: str) -> bytes:
+        return _picture(command, dot_text, wanted, seconds)
+
+    with ThreadPoolExecutor() as pool:
+        return dict(zip(formats, pool.map(picture, formats), strict=True))
 
 
 def _picture(command: str, dot_text: str, wanted: str, seconds: float) -> bytes:
     arguments = [command, "-Kneato", "-n2", f"-T{wanted}"]
     if wanted == "png":
-        arguments.append(f"-Gdpi={PNG_DPI}")
+        arguments += [f"-Gdpi={PNG_DPI}", f"-Gsize={_INCHES},{_INCHES}"]
     try:
         done = subprocess.run(
             arguments,

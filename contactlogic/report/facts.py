@@ -122,7 +122,7 @@ def constant(table: int, relays: int) -> str | None:
     return "always on" if table == all_rows(relays) else None
 
 
-def longest_runs(network: Network, *, work: int = 2_000_000) -> dict[str, Run]:
+def longest_runs(network: Network, *, work: int = 1_000_000) -> dict[str, Run]:
     """The longest run of contacts in series of each load, in the loads' order.
 
     Args:
