@@ -20,10 +20,11 @@ from contactlogic.sequence.pattern import sequence_of
 from contactlogic.sequence.prove import network_motion, prove_network
 from contactlogic.sequence.recovery import Recovery
 from contactlogic.sequence.selfstart import Blemishes, Recovers, homing, shared_coils
+from contactlogic.sequence.starting import needed_relays, start
 from contactlogic.sequence.steps import Expansion
 from contactlogic.sequence.transit import Transit, transits
 from contactlogic.sequence.wants import drive_targets, load_targets
-from contactlogic.synthesis import Search, synthesise
+from contactlogic.synthesis import Search, finish, synthesise
 from contactlogic.truth import Target
 
 __all__ = [
@@ -35,8 +36,11 @@ __all__ = [
     "wire_sequence",
 ]
 
-MOST_RELAYS = 10
-"""Most relays and inputs of a sequence that is wired; recovery is proved of far more."""
+MOST_RELAYS = 24
+"""Most relays and inputs of a sequence that is wired; recovery is proved of more."""
+
+_SEARCHED = 10  # relays and inputs up to which the wiring is searched, not only built
+_FEW = 5  # up to here the search also begins with wiring that comes home by the shortest way
 
 
 @dataclass(frozen=True)
@@ -132,12 +136,7 @@ def wire_sequence(job: SequenceJob | PatternJob, search: Search) -> SequencerRes
             expected=f"at most {MOST_RELAYS} for wiring",
             hint="contactlogic recover proves the recovery of larger sequencers",
         )
-    asked = table_job(job, expansion)
-    drives = {name: asked.targets[name] for name in expansion.relays}
-    home = asked.targets | homing(expansion, drives)
-    penalty = Recovers(table.timing, expansion, table.inputs_return)
-    blemishes = Blemishes(table.timing, expansion)
-    result = synthesise(asked, search, home=home, penalty=penalty, blemishes=blemishes)
+    result = _wired(table_job(job, expansion), table, expansion, search)
     recoveries, gaps = [], []
     states = tuple(step.state for step in expansion.steps)
     for design in result.designs:
@@ -160,6 +159,38 @@ def wire_sequence(job: SequenceJob | PatternJob, search: Search) -> SequencerRes
         notes + expansion.notes,
         expansion=expansion,
         timing=table.timing,
+    )
+
+
+def _wired(job: Job, table: SequenceTable, expansion: Expansion, search: Search) -> Result:
+    """Wiring that starts itself, as far as the search can tell."""
+    n = len(expansion.columns)
+    share = None if search.seconds is None else search.seconds / 3
+    started = start(job, expansion, seconds=share, seed=search.seed)
+    if n > _SEARCHED:
+        if started.failed is not None:
+            raise _not_self_starting(table, started.failed, n)
+        return finish(
+            job,
+            search,
+            dict.fromkeys(search.forms, started.network),
+            at_least=needed_relays(expansion),
+            statuses=started.statuses(job.relays),
+        )
+    penalty = Recovers(table.timing, expansion, table.inputs_return)
+    blemishes = Blemishes(table.timing, expansion)
+    home = None
+    if started.failed is not None or n <= _FEW:
+        drives = {name: job.targets[name] for name in expansion.relays}
+        home = job.targets | homing(expansion, drives)
+    return synthesise(
+        job,
+        search,
+        home=home,
+        penalty=penalty,
+        blemishes=blemishes,
+        starts=() if started.failed is not None else (started.network,),
+        covered=None if home is not None else started.covers,
     )
 
 
