@@ -34,6 +34,7 @@ __all__ = [
     "FORMS",
     "Entry",
     "Form",
+    "bound",
     "entries",
     "from_lines",
     "least_bridge",
@@ -47,6 +48,7 @@ FORMS: tuple[Form, ...] = ("bridge", "ladder", "contacts")
 
 _LOAD = 1
 _DIGITS = "0123456789abcdefghijklmnopqrstuvwxyz"
+_NETS = {"-": None} | {digit: net for net, digit in enumerate(_DIGITS)}
 _NAMES = "ABCD"
 
 
@@ -80,6 +82,15 @@ def least_contacts(target: Target) -> Entry | None:
     return _look_up(target, "contacts")
 
 
+def bound(target: Target, form: Form) -> int | None:
+    """Poles (contacts) that every network for one load needs; None as for `least_bridge`."""
+    relays = _relays_of(target)
+    if len(relays) > RELAYS:
+        return None
+    on, free = _narrow(target.on, relays), _narrow(target.free, relays)
+    return _shelf(form).least(on, free, len(relays))
+
+
 def contacts_of(mesh: Mesh) -> int:
     """Makes and breaks counted singly."""
     return sum((pole.make is not None) + (pole.break_ is not None) for pole in mesh.poles)
@@ -96,11 +107,7 @@ def order(form: Form, mesh: Mesh) -> tuple[int, ...]:
 
 
 def _look_up(target: Target, form: Form) -> Entry | None:
-    relays = [
-        i
-        for i in range(target.n)
-        if depends_on(target.on, target.n, i) or depends_on(target.free, target.n, i)
-    ]
+    relays = _relays_of(target)
     if len(relays) > RELAYS:
         return None
     shelf = _shelf(form)
@@ -109,6 +116,14 @@ def _look_up(target: Target, form: Form) -> Entry | None:
     )
     mesh = _turned(shelf.mesh(table), turns()[int(classes().turn[table])], relays)
     return Entry(mesh, at_least, size(form, mesh) == at_least)
+
+
+def _relays_of(target: Target) -> list[int]:
+    return [
+        i
+        for i in range(target.n)
+        if depends_on(target.on, target.n, i) or depends_on(target.free, target.n, i)
+    ]
 
 
 def _narrow(table: int, relays: Sequence[int]) -> int:
@@ -158,6 +173,13 @@ class _Shelf:
         fits = every[every & ~free == on]
         return int(fits[self.rank[fits].argmin()]), int(self.bound[fits].min())
 
+    def least(self, on: int, free: int, relays: int) -> int:
+        """The least bound of all completions."""
+        if not free:
+            return int(self.bound[on])
+        every = self.every[relays]
+        return int(self.bound[every[every & ~free == on]].min())
+
 
 @cache
 def _shelf(form: Form) -> _Shelf:
@@ -201,8 +223,7 @@ def to_lines(found: dict[tuple[Form, int], Entry]) -> list[str]:
 
 def _pole(word: str) -> Ends:
     relay, common, make, break_ = tuple(word)
-    at = {"-": None} | {digit: net for net, digit in enumerate(_DIGITS)}
-    return Ends(_NAMES.index(relay), _DIGITS.index(common), at[make], at[break_])
+    return Ends(_NAMES.index(relay), _DIGITS.index(common), _NETS[make], _NETS[break_])
 
 
 def _word(pole: Ends) -> str:

@@ -16,6 +16,7 @@ from contactlogic.search.cases import Budget
 from contactlogic.search.problem import Problem
 from contactlogic.search.restriction import Restrictions
 from contactlogic.search.rise import Rise
+from contactlogic.search.shares import demands_of, least_of_sets
 from contactlogic.search.solver import SOLVER
 
 __all__ = ["ExactNews", "ExactResult", "exact", "prove"]
@@ -84,7 +85,7 @@ def prove(
     Raises:
         ProofFailed: a network found does not do what was asked.
     """
-    yield from _news(problem, known, most, seed, Budget(conflicts), SOLVER)
+    yield from _news(problem, known, most, seed, Budget(conflicts), SOLVER, True)
 
 
 def exact(
@@ -96,6 +97,7 @@ def exact(
     most: int | None = None,
     known: Network | None = None,
     solver: str = SOLVER,
+    catalogue: bool = True,
 ) -> ExactResult:
     """Search for a network with the fewest poles and prove that there is none with fewer.
 
@@ -108,13 +110,14 @@ def exact(
         known: a correct network (from windows, say); only smaller ones are searched for, and it
             is the answer if there are none or the time runs out.
         solver: name of the python-sat solver.
+        catalogue: whether smaller problems may be looked up in the catalogue.
 
     Raises:
         ProofFailed: a network found does not do what was asked.
     """
     budget = Budget(conflicts, None if seconds is None else monotonic() + seconds)
     news = ExactNews(0)
-    for step in _news(problem, known, most, seed, budget, solver):
+    for step in _news(problem, known, most, seed, budget, solver, catalogue):
         news = step
     network = known if news.network is None and news.feasible else news.network
     proven = news.finished and news.feasible
@@ -128,9 +131,12 @@ def _news(
     seed: int,
     budget: Budget,
     solver: str,
+    catalogue: bool,
 ) -> Iterator[ExactNews]:
     size = None if known is None else _size(problem, known)
     whole = Rise(problem, size=size, seed=seed, solver=solver)
+    if whole.state == "open" and catalogue:
+        whole.learn(demands_of(problem, least_of_sets(problem)))
     told = whole.at_least
     yield _told(whole)
     smaller: Restrictions | None = None
@@ -152,7 +158,7 @@ def _news(
             break
         share *= 4
         if smaller is None and problem.n > 1:
-            smaller = Restrictions(problem, seed=seed, solver=solver)
+            smaller = Restrictions(problem, seed=seed, solver=solver, catalogue=catalogue)
     if whole.state == "closed" or whole.at_least > told:
         yield _told(whole)
 

@@ -16,8 +16,10 @@ from itertools import combinations
 from contactlogic.search.alike import moved, turns
 from contactlogic.search.bounds import Demand
 from contactlogic.search.cases import Budget
+from contactlogic.search.catalogue import bound
 from contactlogic.search.problem import Problem
 from contactlogic.search.rise import Rise
+from contactlogic.search.shares import demands_of, least_of_sets
 from contactlogic.truth import Target
 
 __all__ = ["Restrictions", "restricted"]
@@ -32,13 +34,27 @@ _Key = tuple[int, _Loads, tuple[object, ...]]
 class _Smaller:
     """A smaller problem, and the smaller ones it leads to."""
 
-    def __init__(self, problem: Problem, seed: int, solver: str) -> None:
+    def __init__(self, problem: Problem, seed: int, solver: str, catalogue: bool) -> None:
         self.problem = problem
         self.next: list[tuple[tuple[int, ...], _Smaller]] = []  # relays kept, in the next's order
         self._seed, self._solver = seed, solver
         self._rise: Rise | None = None
         self.shares: dict[int, int] = {}  # least poles of each set of relays, as bits
         self.feasible = True
+        self.known = False  # whether the catalogue has all there is to know
+        if catalogue:
+            self._look_up()
+
+    def _look_up(self) -> None:
+        problem = self.problem
+        self.shares = least_of_sets(problem)
+        if problem.budgets or problem.separate or len(problem.targets) != 1:
+            return
+        (target,) = problem.targets.values()
+        least = bound(target, "contacts" if problem.objective == "contacts" else "bridge")
+        if least is not None:
+            self.known = True
+            self.shares[(1 << problem.n) - 1] = least
 
     def gather(self) -> None:
         """Take over what the smaller problems show of sets of relays."""
@@ -49,6 +65,8 @@ class _Smaller:
 
     def work(self, budget: Budget) -> None:
         """Raise the bound as far as the budget goes."""
+        if self.known:
+            return
         if self._rise is None:
             self._rise = Rise(self.problem, seed=self._seed, solver=self._solver)
         rise = self._rise
@@ -59,10 +77,9 @@ class _Smaller:
         self.shares[(1 << self.problem.n) - 1] = rise.at_least
         self.feasible = rise.feasible
 
-    def demands(self) -> Iterator[Demand]:
+    def demands(self) -> list[Demand]:
         """The shares as demands."""
-        for relays, least in sorted(self.shares.items()):
-            yield Demand(tuple(relays >> kind.relay & 1 for kind in self.problem.kinds), least)
+        return demands_of(self.problem, self.shares)
 
 
 class Restrictions:
@@ -72,16 +89,17 @@ class Restrictions:
     on once.
     """
 
-    def __init__(self, problem: Problem, *, seed: int, solver: str) -> None:
-        self._seed, self._solver = seed, solver
+    def __init__(self, problem: Problem, *, seed: int, solver: str, catalogue: bool = True) -> None:
+        """`catalogue`: whether problems of one load are looked up there."""
+        self._start = (seed, solver, catalogue)
         self._known: dict[_Key, _Smaller] = {}
-        self._root = _Smaller(problem, seed, solver)
+        self._root = _Smaller(problem, *self._start)
         self._descend(self._root)
         self._all = sorted(self._known.values(), key=lambda smaller: smaller.problem.n)
 
     def _descend(self, node: _Smaller) -> None:
         n = node.problem.n
-        if n < 2:
+        if n < 2 or node.known:
             return
         size = n - 1 if n <= _STEPWISE_RELAYS else _NORMAL_RELAYS
         for kept in combinations(range(n), size):
@@ -89,7 +107,7 @@ class Restrictions:
                 order, smaller = _normal(restricted(node.problem, kept, row))
                 key = _key(smaller)
                 if key not in self._known:
-                    self._known[key] = _Smaller(smaller, self._seed, self._solver)
+                    self._known[key] = _Smaller(smaller, *self._start)
                     self._descend(self._known[key])
                 node.next.append((tuple(kept[k] for k in order), self._known[key]))
 
@@ -98,7 +116,7 @@ class Restrictions:
         """False if one of them is proved to have no network within its limits."""
         return all(smaller.feasible for smaller in self._all)
 
-    def work(self, budget: Budget, share: int) -> Iterator[Demand]:
+    def work(self, budget: Budget, share: int) -> list[Demand]:
         """Spend up to `share` conflicts on every smaller problem; demands on the whole problem."""
         for smaller in self._all:
             smaller.gather()
