@@ -83,7 +83,12 @@ def wire(
 
 @dataclass(frozen=True)
 class Search:
-    """How to search; the arguments of `wire`."""
+    """How to search; the arguments of `wire`, and what is to be cheap.
+
+    Args:
+        price: what a network costs; weighs before the number of poles, picklable. None for none.
+        bargain: a price that no network is known to go below.
+    """
 
     form: Forms = "both"
     seconds: float | None = None
@@ -92,6 +97,8 @@ class Search:
     workers: int = 2
     repeaters: bool = False
     watch: Callable[[Sequence[Form], Progress], None] | None = None
+    price: Callable[[Network], int] | None = None
+    bargain: int = 0
 
 
 def synthesise(
@@ -119,7 +126,11 @@ def synthesise(
     forms: list[Form] = ["ladder", "bridge"] if search.form == "both" else [search.form]
     found = _covers(job, deadline, seed)
     statuses = tuple(_status(job, name, least[0]) for name, least in found.items())
-    if penalty is None and (shelf := _from_catalogue(job, forms)) is not None:
+    if (
+        penalty is None
+        and search.price is None
+        and (shelf := _from_catalogue(job, forms)) is not None
+    ):
         designs = (
             _proved(job, form, _taken(form, entry, job), {}, entry.at_least, statuses)
             for form, entry in shelf.items()
@@ -133,7 +144,13 @@ def synthesise(
     ladder = _ladder(at_home, narrow, deadline, seed, timed=seconds is not None)
     watch = search.watch
     best = best_networks(
-        replace(_task(job, search.repeaters), penalty=penalty, blemishes=blemishes),
+        replace(
+            _task(job, search.repeaters),
+            penalty=penalty,
+            blemishes=blemishes,
+            price=search.price,
+            bargain=search.bargain,
+        ),
         {name: [ladder] for name in forms},
         forms,
         seconds=None if seconds is None else max(0.0, deadline - monotonic()),

@@ -31,7 +31,7 @@ from contactlogic.purchase.parts import (
 from contactlogic.purchase.places import Unit, place_poles
 from contactlogic.purchase.program import Bound, Program, solved
 
-__all__ = ["Item", "Order", "Purchase", "buy"]
+__all__ = ["Item", "Order", "Purchase", "buy", "coil_groups"]
 
 _USES: tuple[Use, ...] = get_args(Use)
 
@@ -115,7 +115,7 @@ def buy(
     Raises:
         PartsError: nothing in the list fits or the stock does not reach; says for which relay.
     """
-    groups = _coil_groups(parts.parts, order.coil)
+    groups = coil_groups(parts.parts, order.coil)
     if not groups and any(need.have is None for need in needs):
         wanted = order.coil.text if order.coil else "any voltage"
         raise PartsError(
@@ -162,9 +162,7 @@ def buy(
     )
 
 
-def _coil_groups(
-    parts: Sequence[Part], wanted: Coil | None
-) -> list[tuple[Coil | None, list[Part]]]:
+def coil_groups(parts: Sequence[Part], wanted: Coil | None) -> list[tuple[Coil | None, list[Part]]]:
     """Parts whose coils can stand side by side, by voltage and kind of current.
 
     A part that does not say AC or DC stands with either.  A part that gives no voltage stands

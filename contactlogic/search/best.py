@@ -29,8 +29,8 @@ class Task:
     """What to search for, by name: everything of a job that the search depends on.
 
     `budgets` are most poles of a relay; with `repeaters` a relay over its budget is given
-    repeaters of as many poles, as few as possible.  `penalty` and
-    `blemishes` as in `Goal`.
+    repeaters of as many poles, as few as possible.  `penalty`,
+    `blemishes`, `price` and `bargain` as in `Goal`.
     """
 
     relays: tuple[str, ...]
@@ -42,6 +42,8 @@ class Task:
     repeaters: bool = False
     penalty: Callable[[Network], int] | None = None
     blemishes: Callable[[Network], int] | None = None
+    price: Callable[[Network], int] | None = None
+    bargain: int = 0
 
 
 @dataclass(frozen=True)
@@ -159,6 +161,8 @@ def _goal(task: Task, *, ladder: bool) -> Goal:
         task.objective == "contacts",
         task.penalty,
         task.blemishes,
+        task.price,
+        task.bargain,
         (task.relays, tuple(task.targets)),
     )
 

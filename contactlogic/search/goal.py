@@ -32,7 +32,9 @@ class Goal:
         penalty: a further judgement that weighs before all cost, 0 where all is well; it gets the
             network under the names of `names` and must be picklable.
         blemishes: counts what is to be avoided among networks of equal poles, likewise.
-        names: relays and loads, for `penalty` and `blemishes`.
+        price: what a network costs, likewise; weighs before the number of poles. None for none.
+        bargain: a price that no network is known to go below.
+        names: relays and loads, for `penalty`, `blemishes` and `price`.
     """
 
     n: int
@@ -45,6 +47,8 @@ class Goal:
     singly: bool = False
     penalty: Callable[[Network], int] | None = None
     blemishes: Callable[[Network], int] | None = None
+    price: Callable[[Network], int] | None = None
+    bargain: int = 0
     names: tuple[tuple[str, ...], tuple[str, ...]] = ((), ())
 
     def accepts(self, mesh: Mesh) -> bool:
@@ -100,16 +104,22 @@ class Goal:
         makes = sum(pole.make is not None for pole in own)
         return max(makes, len(own) - makes)
 
+    def weight(self, mesh: Mesh) -> tuple[int, ...]:
+        """What weighs before the number of poles: a walk never makes it more."""
+        if self.price is None:
+            return (self.excess(mesh),)
+        return self.excess(mesh), self.price(to_network(mesh, *self.names))
+
     def cost(self, mesh: Mesh) -> tuple[int, ...]:
-        """Excess first, then the order of section 4."""
+        """Excess first, then the price if it is asked for, then the order of section 4."""
         poles, *ties = cost(mesh)
         if self.blemishes is not None:
             ties.insert(0, self.blemishes(to_network(mesh, *self.names)))
-        return (self.excess(mesh), poles, *ties)
+        return (*self.weight(mesh), poles, *ties)
 
     def reached(self, mesh: Mesh, enough: int) -> bool:
-        """Whether a mesh keeps every budget with no more than `enough` poles."""
-        return len(mesh.poles) <= enough and not self.excess(mesh)
+        """Whether a mesh keeps every budget with no more than `enough` poles, and is a bargain."""
+        return len(mesh.poles) <= enough and self.weight(mesh) <= (0, self.bargain)
 
 
 def cost(mesh: Mesh) -> tuple[int, int, int, int]:

@@ -26,6 +26,7 @@ _CONFLICTS = 2000  # for one question; windows that need more are left
 _PATIENCE = 12  # windows without gain, for each pole, before a walk starts afresh
 _POLISH = 8  # windows for ties once the poles are known to be fewest
 _SIGN_OF_LIFE = 10  # windows between signs of life
+_DEARER = 0.25  # of the windows with as many poles are tried with one more where the price counts
 _TRIES = 6  # different answers looked at where a filter may reject them
 
 
@@ -45,7 +46,10 @@ class Walk:
         self.windows = 0
 
     def step(self) -> None:
-        """Try one window: first with a pole fewer, else as many, to wander."""
+        """Try one window: first with a pole fewer, else as many, to wander.
+
+        Where the price counts, one more pole is tried now and then: it may cost less.
+        """
         if len(self.here.poles) < 2:
             return
         size = self.random.choice((2, 3, 3, 4, 4, 4, 5))
@@ -54,7 +58,8 @@ class Walk:
         fewer = self.random.random() < 0.6
         found = self._resynthesise(chosen, len(chosen) - 1) if fewer else None
         if found is None:
-            found = self._resynthesise(chosen, len(chosen))
+            more = self.goal.price is not None and self.random.random() < _DEARER
+            found = self._resynthesise(chosen, len(chosen) + more)
         if found is not None:
             self.here = found
             if self.goal.cost(found) < self.goal.cost(self.best):
@@ -99,7 +104,7 @@ class Walk:
             candidate = trim(Mesh((*rest, *made), mesh.feeds))
             if set(candidate.poles) == set(mesh.poles) or not goal.accepts(candidate):
                 continue
-            if goal.excess(candidate) <= goal.excess(mesh):
+            if goal.weight(candidate) <= goal.weight(mesh):
                 return candidate
         return None
 
