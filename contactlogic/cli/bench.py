@@ -1,4 +1,4 @@
-"""The commands for the bench, and their options: hazards."""
+"""The commands for the bench, and their options: hazards, faults."""
 
 from __future__ import annotations
 
@@ -44,6 +44,7 @@ _Quiet = Annotated[bool, typer.Option("--quiet", "-q", help="Print errors only."
 def register(app: typer.Typer) -> None:
     """Add the commands."""
     app.command()(hazards)
+    app.command()(faults)
 
 
 def hazards(
@@ -66,4 +67,31 @@ def hazards(
         wanted = Source(source, job, None if form is None else form.value, loads, unlisted, quiet)
         clean = hazarding.run(hazarding.Request(wanted, json))
         if none and not clean:
+            raise typer.Exit(Status.WRONG)
+
+
+def faults(
+    source: _Source,
+    job: _Job = None,
+    form: _Form = None,
+    fail_off: Annotated[
+        str | None,
+        typer.Option(
+            metavar="A,B",
+            help="Loads that no single open fault may turn on: exit status 1 if one does.",
+        ),
+    ] = None,
+    json: _Json = False,
+    quiet: _Quiet = False,
+    loads: _Loads = None,
+    unlisted: _Unlisted = None,
+) -> None:
+    """Try every single fault: which rows go wrong, and which way; loads turned on first."""
+    from contactlogic.cli import faulting
+    from contactlogic.cli.subject import Source
+
+    with guarded(keep=str(source)):
+        wanted = Source(source, job, None if form is None else form.value, loads, unlisted, quiet)
+        named = () if fail_off is None else (fail_off,)
+        if not faulting.run(faulting.Request(wanted, named, json)):
             raise typer.Exit(Status.WRONG)

@@ -79,6 +79,8 @@ def panel_of(
         job: for the kinds of loads and for relays with separate contacts.
         wires: number and terminals of every wire, as `contactlogic.report.wiring` lists them.
         rails: the terminals of supply and return.
+        repeaters: where one follows a relay whose coil is a load of this network, its own coil is
+            in parallel, and a load too.
         guided: relays (a repeater counts as one of its own) with forcibly guided contacts.
     """
     contacts = []
@@ -93,6 +95,9 @@ def panel_of(
     for load in network.loads:
         fed, returned = load_marks(kinds.get(load))
         loads[load] = (f"{load}:{fed}", f"{load}:{returned}")
+        for coil in (name for name, of in repeaters.items() if of == load):
+            if network.loads[load] is not None and coil in network.relays:
+                loads[coil] = (f"{coil}:{fed}", f"{coil}:{returned}")
     return Panel(
         tuple(name for name in network.relays if name not in repeaters),
         {name: repeaters.get(name, name) for name in network.relays},
