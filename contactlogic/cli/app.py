@@ -99,6 +99,9 @@ def wire(
         bool,
         typer.Option("--repeaters", help="Give relays over budget repeaters, as few as possible."),
     ] = False,
+    per_terminal: Annotated[
+        int, typer.Option(min=2, max=9, metavar="N", help="Most wires on a terminal, 2 or more.")
+    ] = 2,
     loads: Annotated[
         str | None,
         typer.Option(metavar="A,B", help="Which columns of a .csv or .xlsx table are loads."),
@@ -125,6 +128,7 @@ def wire(
         workers=workers,
         poles_per_relay=poles_per_relay,
         repeaters=repeaters,
+        per_terminal=per_terminal,
         loads=loads,
         unlisted=unlisted,
     )

@@ -41,6 +41,7 @@ class Request:
     workers: int = 2
     poles_per_relay: int | None = None
     repeaters: bool = False
+    per_terminal: int = 2
     loads: str | None = None
     unlisted: str | None = None
     began: float = field(default_factory=monotonic)
@@ -87,7 +88,7 @@ def run(request: Request) -> Result:
     from contactlogic.report.summary import summary
 
     known = [facts(design, result.repeaters) for design in result.designs]
-    made = papers(result, known)
+    made = papers(result, known, per_terminal=request.per_terminal)
     said = summary(result, known, width=screen_width(), verbose=request.verbose)
     write_folder(folder, made.files, force=request.force)  # last, so that a fault leaves nothing
     if request.quiet:

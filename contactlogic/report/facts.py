@@ -102,14 +102,18 @@ def free_cells(job: Job) -> int:
     return sum(load.target.free.bit_count() for load in job.loads)
 
 
-def free_on(job: Job, tables: Mapping[str, int]) -> dict[int, dict[str, str]]:
+def free_on(
+    job: Job, tables: Mapping[str, int], within: int | None = None
+) -> dict[int, dict[str, str]]:
     """Free cells in which a load is on: row -> load -> "free" or "unlisted", rows ascending.
 
-    A cell is "unlisted" where the job's table does not list the row at all.
+    A cell is "unlisted" where the job's table does not list the row at all.  With `within`, a truth
+    table, only those rows are looked at.
     """
     found: dict[int, dict[str, str]] = {}
     for load in job.loads:
-        for row in rows_of(tables.get(load.name, 0) & load.target.free):
+        marked = tables.get(load.name, 0) & load.target.free
+        for row in rows_of(marked if within is None else marked & within):
             kind = "free" if job.listed >> row & 1 else "unlisted"
             found.setdefault(row, {})[load.name] = kind
     return dict(sorted(found.items()))

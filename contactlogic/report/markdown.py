@@ -6,11 +6,12 @@ becomes real behaviour once the wiring exists, so each one in which a load is on
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Sequence
+from collections.abc import Sequence
 from pathlib import Path
 
 from contactlogic.design import Design, Result
 from contactlogic.job.model import Job
+from contactlogic.report.bench import WireList, current_lines, wire_list
 from contactlogic.report.cautions import CAUTIONS
 from contactlogic.report.facts import Facts, free_on
 from contactlogic.report.phrases import (
@@ -27,20 +28,22 @@ from contactlogic.report.phrases import (
     saving,
 )
 from contactlogic.report.sequencer import expansion_lines, report_section
-from contactlogic.report.text import code, markdown
-from contactlogic.report.wiring import conductors, design_name
+from contactlogic.report.text import code, markdown, table_lines
+from contactlogic.report.wiring import design_name
 from contactlogic.sequencer import SequencerResult
-from contactlogic.truth import settings
+from contactlogic.truth import MAX_INPUTS, rows_of, settings
 
 __all__ = ["report"]
 
 
-def report(result: Result, facts: Sequence[Facts]) -> str:
+def report(result: Result, facts: Sequence[Facts], wires: Sequence[WireList] | None = None) -> str:
     """The whole report as Markdown text.
 
     Args:
         facts: of each design, in the order of `result.designs`.
+        wires: of each design; made here with two conductors to a terminal if not given.
     """
+    lists = wires or [wire_list(d, result.job, repeaters=result.repeaters) for d in result.designs]
     job = result.job
     names = [f"{design.form} {design.fingerprint}" for design in result.designs]
     lines = [f"# {markdown(job.title) or 'Untitled'}", "", ", ".join(names), ""]
@@ -51,7 +54,7 @@ def report(result: Result, facts: Sequence[Facts]) -> str:
         ]
     if len(result.designs) > 1:
         lines += [
-            *_table(COMPARED, compared(result.designs)),
+            *table_lines(COMPARED, compared(result.designs)),
             "",
             f"{saving(result).capitalize()}.",
             "",
@@ -62,7 +65,7 @@ def report(result: Result, facts: Sequence[Facts]) -> str:
         steps = [*expansion_lines(sequencer), *(f"note: {note}" for note in sequencer.notes)]
         lines += ["## Expanded list", "", "```text", *steps, "```", ""]
     for index, (design, known) in enumerate(zip(result.designs, facts, strict=True)):
-        lines += _design(design, result, known)
+        lines += _design(design, result, known, lists[index])
         lines += [] if sequencer is None else report_section(sequencer, index)
     lines += ["## Cautions", "", *(f"- {caution}" for caution in CAUTIONS)]
     return "\n".join(lines) + "\n"
@@ -83,6 +86,7 @@ def _asked(job: Job) -> list[str]:
         f"- supply, return: {markdown(not_given(job.supply.return_))}",
         f"- isolate: {job.limits.isolate}",
         f"- objective: {job.limits.objective}",
+        *(f"- at {markdown(load)}: {markdown(said)}" for load, said in _fitted(job)),
         "",
     ]
     rows_of_loads = []
@@ -94,10 +98,15 @@ def _asked(job: Job) -> list[str]:
         facts = (not_given(load.kind), not_given(amps))
         rows_of_loads.append((markdown(load.name), *facts, *wanted, source))
     header = ("load", "kind", "current", "rows on", "rows off", "rows free", "wanted by")
-    return [*lines, *_table(header, rows_of_loads), ""]
+    return [*lines, *table_lines(header, rows_of_loads), ""]
 
 
-def _design(design: Design, result: Result, facts: Facts) -> list[str]:
+def _fitted(job: Job) -> list[tuple[str, str]]:
+    """Loads and coils with what is fitted to them."""
+    return [(load, ", ".join(parts.texts())) for load, parts in job.bench.fittings.items()]
+
+
+def _design(design: Design, result: Result, facts: Facts, wires: WireList) -> list[str]:
     job = result.job
     network = design.network
     counts = network.per_relay()
@@ -119,7 +128,7 @@ def _design(design: Design, result: Result, facts: Facts) -> list[str]:
     lines += [f"- note: {markdown(note)}" for note in design.notes]
     lines += [""] if design.notes else []
     lines += ["### Loads as built", ""]
-    lines += _table(
+    lines += table_lines(
         ("load", "switching algebra", "longest run"),
         [
             (markdown(load), code(formula(facts, load, len(job.relays))), facts.runs[load])
@@ -139,16 +148,18 @@ def _design(design: Design, result: Result, facts: Facts) -> list[str]:
     ]
     if not result.repeaters:
         header, rows = header[:-1], [row[:-1] for row in rows]
-    lines += _table(header, rows)
+    lines += table_lines(header, rows)
+    currents = current_lines(wires)
+    lines += ["", "### Current of each pole", "", *currents] if currents else []
     lines += ["", "### Two-level covers", "", *_covers(design), ""]
-    lines += ["### Wiring", "", *_wiring(design, job), ""]
+    lines += ["### Wiring", "", *_wiring(wires), ""]
     return [*lines, "### As built, row by row", "", *_rows(design, job, facts), ""]
 
 
 def _covers(design: Design) -> list[str]:
     if not design.covers:
         return ["None recorded."]
-    return _table(
+    return table_lines(
         ("load", "cover", "size", "status"),
         [
             (
@@ -162,11 +173,11 @@ def _covers(design: Design) -> list[str]:
     )
 
 
-def _wiring(design: Design, job: Job) -> list[str]:
-    unwired = [load for load, net in design.network.loads.items() if net is None]
-    lines = _table(
+def _wiring(wires: WireList) -> list[str]:
+    unwired = [load for load, net in wires.design.network.loads.items() if net is None]
+    lines = table_lines(
         ("wire", "net", "from", "to"),
-        [(c.wire, c.net, markdown(c.start), markdown(c.end)) for c in conductors(design, job)],
+        [(c.wire, c.net, markdown(c.start), markdown(c.end)) for c in wires.conductors],
     )
     if unwired:
         names = ", ".join(map(markdown, unwired))
@@ -175,9 +186,13 @@ def _wiring(design: Design, job: Job) -> list[str]:
 
 
 def _rows(design: Design, job: Job, facts: Facts) -> list[str]:
-    """Every row, with the free and unlisted cells in which a load is on marked."""
+    """Every row, with the free and unlisted cells in which a load is on marked.
+
+    Of more relays than a table job may have, the listed rows alone.
+    """
     network = design.network
-    marked = free_on(job, facts.tables)
+    whole = len(job.relays) <= MAX_INPUTS
+    marked = free_on(job, facts.tables, None if whole else job.listed)
     legend = (
         "`1` on, `0` off, as wanted or free. `1!` on although the job left it open: a don't-care "
         "that the wiring turns into real behaviour. The last column says whether the job lists "
@@ -186,7 +201,7 @@ def _rows(design: Design, job: Job, facts: Facts) -> list[str]:
     loads = list(network.loads)
     header = ["row", *map(markdown, job.relays), *map(markdown, loads), "on though left open"]
     rows = []
-    for row in range(1 << len(job.relays)):
+    for row in range(1 << len(job.relays)) if whole else rows_of(job.listed):
         left_open = marked.get(row, {})
         cells = [
             ("1!" if load in left_open else "1") if facts.tables[load] >> row & 1 else "0"
@@ -195,13 +210,6 @@ def _rows(design: Design, job: Job, facts: Facts) -> list[str]:
         said = ", ".join(f"{markdown(load)} ({kind})" for load, kind in left_open.items())
         rows.append((row, *settings(row, len(job.relays)), *cells, said))
     note = f"{count(len(marked), 'row')} marked." if marked else "No row is marked."
-    return [legend, "", note, "", *_table(header, rows)]
-
-
-def _table(header: Sequence[str], rows: Iterable[Sequence[object]]) -> list[str]:
-    """A Markdown table; cells are already escaped."""
-    return [
-        "| " + " | ".join(header) + " |",
-        "|" + " --- |" * len(header),
-        *("| " + " | ".join(str(cell) for cell in row) + " |" for row in rows),
-    ]
+    if not whole:
+        note = f"The listed rows alone, of {1 << len(job.relays)} that were proved. {note}"
+    return [legend, "", note, "", *table_lines(header, rows)]

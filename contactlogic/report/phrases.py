@@ -6,7 +6,7 @@ from collections.abc import Iterable, Mapping, Sequence
 
 from contactlogic.design import Bound, Design, Result
 from contactlogic.job.model import Job, Limits
-from contactlogic.report.facts import Facts, constant, free_cells, free_on, on_at_rest
+from contactlogic.report.facts import Facts, constant, free_cells, on_at_rest
 
 __all__ = [
     "COMPARED",
@@ -92,7 +92,7 @@ def proof_line(design: Design, job: Job, facts: Facts) -> str:
     free = free_cells(job)
     if not free:
         return f"{line}, none free"
-    on = sum(len(loads) for loads in free_on(job, facts.tables).values())
+    on = sum((facts.tables.get(load.name, 0) & load.target.free).bit_count() for load in job.loads)
     return f"{line}; of {count(free, 'free cell')} (load and row) {on} came out on"
 
 

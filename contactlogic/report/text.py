@@ -13,7 +13,7 @@ import re
 import unicodedata
 from collections.abc import Iterable, Sequence
 
-__all__ = ["code", "csv_text", "markdown", "neutral_cell", "one_line"]
+__all__ = ["code", "csv_text", "markdown", "neutral_cell", "one_line", "table_lines"]
 
 _MARKDOWN_SPECIALS = re.compile(r"([\\`*_\[\]<>|#~&$])")
 _FORMULA_STARTS = ("=", "+", "-", "@", "\t", "\r", "\n")
@@ -36,6 +36,15 @@ def markdown(text: str) -> str:
 def code(text: str) -> str:
     """`text` as a Markdown code span, for switching algebra (which has no backtick or bar)."""
     return f"`{one_line(text)}`"
+
+
+def table_lines(header: Sequence[str], rows: Iterable[Sequence[object]]) -> list[str]:
+    """A Markdown table; cells are already escaped."""
+    return [
+        "| " + " | ".join(header) + " |",
+        "|" + " --- |" * len(header),
+        *("| " + " | ".join(str(cell) for cell in row) + " |" for row in rows),
+    ]
 
 
 def neutral_cell(text: str) -> str:

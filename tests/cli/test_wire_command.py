@@ -37,7 +37,10 @@ rows = \"\"\"
 \"\"\"
 """
 
-NAMES = ("drawing.png", "drawing.svg", "schedule.csv", "wiring.csv")
+NAMES = (
+    *("drawing.png", "drawing.svg", "schedule.csv"),
+    *("terminals.csv", "ticklist.md", "wiring.csv", "wiring.xlsx"),
+)
 
 
 def papers(*forms: str) -> list[str]:
@@ -153,7 +156,7 @@ def test_a_folder_never_holds_papers_of_two_jobs(here: Path) -> None:
     data = json.loads((here / "papers/design.json").read_text())
     marks = {design["form"]: design["fingerprint"] for design in data["designs"]}
     for name in PAPERS:
-        if not name.endswith((".json", ".png")):
+        if not name.endswith((".json", ".png", ".xlsx")):
             text = (here / "papers" / name).read_text()
             assert "Stairs" not in text, name
             assert marks.get(name.partition("/")[0], marks["ladder"]) in text, name
