@@ -15,22 +15,22 @@ from typing import Literal
 from contactlogic.check import prove
 from contactlogic.child import ChildCrashed, ChildTimedOut, run
 from contactlogic.design import Bound, Design, Form, LoadStatus, Result
-from contactlogic.errors import LimitError, Place, ProofFailed
+from contactlogic.errors import ProofFailed
 from contactlogic.job.model import Job
 from contactlogic.ladder.build import build
 from contactlogic.ladder.candidates import candidate_trees
 from contactlogic.ladder.plan import plan_rungs
 from contactlogic.ladder.synthesise import LadderTask, best_ladder, plain_ladder
 from contactlogic.minimize import Cover, covers
-from contactlogic.naming import free_name
-from contactlogic.network import Network, Pole
-from contactlogic.search.best import Best, Task, best_networks
+from contactlogic.network import Network
+from contactlogic.search.best import Task, best_networks
+from contactlogic.search.budgets import excess, over_budget, with_repeaters
 from contactlogic.search.catalogue import Entry, least_bridge, least_contacts, least_ladder
 from contactlogic.search.mesh import to_network
 from contactlogic.search.portfolio import Progress
 from contactlogic.truth import Target
 
-__all__ = ["EFFORT", "Forms", "Search", "synthesise", "wire"]
+__all__ = ["EFFORT", "Forms", "Search", "finish", "synthesise", "wire"]
 
 Forms = Literal["ladder", "bridge", "both"]
 
@@ -100,6 +100,11 @@ class Search:
     price: Callable[[Network], int] | None = None
     bargain: int = 0
 
+    @property
+    def forms(self) -> tuple[Form, ...]:
+        """What to search for, the ladder first."""
+        return ("ladder", "bridge") if self.form == "both" else (self.form,)
+
 
 def synthesise(
     job: Job,
@@ -108,6 +113,8 @@ def synthesise(
     home: Mapping[str, Target] | None = None,
     penalty: Callable[[Network], int] | None = None,
     blemishes: Callable[[Network], int] | None = None,
+    starts: Sequence[Network] = (),
+    covered: Mapping[str, tuple[Cover, ...]] | None = None,
 ) -> Result:
     """`wire` with a judgement of its own.
 
@@ -118,13 +125,16 @@ def synthesise(
             starts there.  None for the job's own.
         penalty: weighs before all cost, 0 where all is well; picklable.
         blemishes: counts what is to be avoided among networks of equal poles; picklable.
+        starts: ladders that do what the job wants, to start from as well.
+        covered: covers of every load, best first, if they are known; the search then begins with
+            `starts` alone.
     """
     seconds, effort, seed = search.seconds, search.effort, search.seed
     if seconds is None and effort is None:
         effort = EFFORT
     deadline = monotonic() + (_CEILING if seconds is None else seconds)
-    forms: list[Form] = ["ladder", "bridge"] if search.form == "both" else [search.form]
-    found = _covers(job, deadline, seed)
+    forms = search.forms
+    found = covered or _covers(job, deadline, seed)
     statuses = tuple(_status(job, name, least[0]) for name, least in found.items())
     if (
         penalty is None
@@ -136,12 +146,14 @@ def synthesise(
             for form, entry in shelf.items()
         )
         return Result(job, tuple(designs), job.relays)
-    at_home = job
-    if home is not None:
-        loads = tuple(replace(load, target=home[load.name]) for load in job.loads)
-        at_home = replace(job, loads=loads)
-    narrow = found if home is None else _covers(at_home, deadline, seed)
-    ladder = _ladder(at_home, narrow, deadline, seed, timed=seconds is not None)
+    known = list(starts)
+    if covered is None:
+        at_home = job
+        if home is not None:
+            loads = tuple(replace(load, target=home[load.name]) for load in job.loads)
+            at_home = replace(job, loads=loads)
+        narrow = found if home is None else _covers(at_home, deadline, seed)
+        known.insert(0, _ladder(at_home, narrow, deadline, seed, timed=seconds is not None))
     watch = search.watch
     best = best_networks(
         replace(
@@ -151,7 +163,7 @@ def synthesise(
             price=search.price,
             bargain=search.bargain,
         ),
-        {name: [ladder] for name in forms},
+        dict.fromkeys(forms, known),
         forms,
         seconds=None if seconds is None else max(0.0, deadline - monotonic()),
         effort=effort,
@@ -162,24 +174,59 @@ def synthesise(
         home=home,
         watch=None if watch is None else lambda progress: watch(forms, progress),
     )
-    missing = [] if search.repeaters else [form for form in forms if best.over[form]]
-    if len(missing) == len(forms):
-        raise _over_budget(job, best)
-    forms = [form for form in forms if form not in missing]
+    return finish(
+        job,
+        search,
+        best.networks,
+        at_least=best.at_least,
+        over=best.over,
+        feasible=best.feasible,
+        statuses=statuses,
+        interrupted=best.progress.interrupted,
+    )
+
+
+def finish(
+    job: Job,
+    search: Search,
+    found: Mapping[Form, Network],
+    *,
+    at_least: int,
+    over: Mapping[Form, int] | None = None,
+    feasible: bool = True,
+    statuses: tuple[LoadStatus, ...] = (),
+    interrupted: bool = False,
+) -> Result:
+    """The proved result of networks found: budgets kept, or repeaters added, or refused.
+
+    Args:
+        found: the network of each form asked for.
+        at_least: proved for every network, in what the objective counts.
+        over: by how much each breaks its budgets, 0 if it keeps them; None to count it here.
+        feasible: False if proved that no network keeps the budgets.
+
+    Raises:
+        LimitError, ProofFailed: as `wire`.
+    """
+    if over is None:
+        over = {form: excess(job, network) for form, network in found.items()}
+    missing = [] if search.repeaters else [form for form in found if over[form]]
+    if len(missing) == len(found):
+        raise over_budget(job, found, over, feasible)
+    forms = [form for form in found if form not in missing]
     notes = tuple(f"no {form} found keeps the pole budgets" for form in missing)
     if search.repeaters:
-        networks, added = _with_repeaters(job, best.networks)
+        networks, added = with_repeaters(job, found)
     else:
-        networks, added = dict(best.networks), {}
+        networks, added = dict(found), {}
     return Result(
         job,
         tuple(
-            _proved(job, form, networks[form], added, best.at_least, statuses, notes)
-            for form in forms
+            _proved(job, form, networks[form], added, at_least, statuses, notes) for form in forms
         ),
         (*job.relays, *added),
         added,
-        interrupted=best.progress.interrupted,
+        interrupted=interrupted,
     )
 
 
@@ -316,67 +363,3 @@ def _relays_that_matter(job: Job) -> int:
 
 def _status(job: Job, name: str, cover: Cover) -> LoadStatus:
     return LoadStatus(name, cover.to_text(job.relays), cover.literals, cover.terms, cover.proved)
-
-
-def _with_repeaters(
-    job: Job, networks: Mapping[Form, Network]
-) -> tuple[dict[Form, Network], dict[str, str]]:
-    """Poles over budget moved to repeaters; the same repeaters for every form."""
-    need: dict[str, int] = {}
-    for network in networks.values():
-        for relay, count in network.per_relay().items():
-            most = job.limits.poles.get(relay)
-            if most:
-                need[relay] = max(need.get(relay, 0), -(-count.poles // most) - 1)
-    taken = [*job.relays, *(load.name for load in job.loads)]
-    added: dict[str, str] = {}
-    names: dict[str, list[str]] = {}
-    for relay, more in need.items():
-        names[relay] = [relay]
-        for _ in range(more):
-            name = free_name(relay, [*taken, *added])
-            added[name] = relay
-            names[relay].append(name)
-    moved: dict[Form, Network] = {}
-    for form, network in networks.items():
-        poles = []
-        for pole in network.poles:
-            most = job.limits.poles.get(pole.relay)
-            if most:
-                turn, place = divmod(pole.number - 1, most)
-                pole = Pole(names[pole.relay][turn], place + 1, pole.common, pole.make, pole.break_)
-            poles.append(pole)
-        order = {name: k for k, name in enumerate((*job.relays, *added))}
-        poles.sort(key=lambda pole: (order[pole.relay], pole.number))
-        moved[form] = replace(network, relays=(*job.relays, *added), poles=tuple(poles))
-    return moved, added
-
-
-def _over_budget(job: Job, best: Best) -> LimitError:
-    """What the least is, and for which relay."""
-    network = next(best.networks[form] for form, over in best.over.items() if over)
-    use = network.per_relay()
-    short = [name for name, most in job.limits.poles.items() if use[name].poles > most]
-    if short:
-        name = short[0]
-        most, least = job.limits.poles[name], use[name].poles
-        poles = "pole" if most == 1 else "poles"
-        what = f"{name} may use {most} {poles}; the least found for it is {least}"
-    else:
-        name, have = next(
-            (name, have)
-            for name, have in job.limits.contacts.items()
-            if use[name].makes > have.makes or use[name].breaks > have.breaks
-        )
-        what = (
-            f"{name} has {have.makes} makes and {have.breaks} breaks; the least found for it is"
-            f" {use[name].makes} makes and {use[name].breaks} breaks"
-        )
-    if not best.feasible:
-        what += " (proved: no network keeps all budgets)"
-    return LimitError(
-        what,
-        place=Place(file=job.file, section="limits"),
-        expected="budgets that a network found can keep",
-        hint="raise the budget, or allow repeaters with --repeaters",
-    )

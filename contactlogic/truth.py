@@ -7,7 +7,7 @@ value in that row.  With `n` inputs a table has `2**n` bits.
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterable, Iterator
 from dataclasses import dataclass
 from functools import cache
 
@@ -21,6 +21,7 @@ __all__ = [
     "rows_of",
     "settings",
     "support",
+    "table_of",
     "variable",
 ]
 
@@ -75,6 +76,14 @@ def rows_of(table: int) -> Iterator[int]:
         low = table & -table
         yield low.bit_length() - 1
         table ^= low
+
+
+def table_of(n: int, rows: Iterable[int]) -> int:
+    """The table over `n` inputs that is 1 in the given rows alone."""
+    packed = bytearray(max(1, 1 << n >> 3))
+    for row in rows:
+        packed[row >> 3] |= 1 << (row & 7)
+    return int.from_bytes(packed, "little")
 
 
 def settings(row: int, n: int) -> tuple[int, ...]:

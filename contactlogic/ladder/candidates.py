@@ -28,7 +28,7 @@ from contactlogic.minimize import cover
 from contactlogic.minimize.cube import Cover
 from contactlogic.truth import Target
 
-__all__ = ["candidate_trees", "combine", "formula_of", "least_tree", "plain_tree"]
+__all__ = ["candidate_trees", "combine", "formula_of", "least_tree", "plain_tree", "tree_of_cover"]
 
 _LEAST_TREES = 60  # least trees looked at for a load of few relays
 _FEW_RELAYS = 6  # up to here a formula is searched for, above it is factored from a cover
@@ -91,6 +91,13 @@ def plain_tree(target: Target, covers: Sequence[Cover]) -> Tree | bool:
     if not target.on or not target.off:
         return bool(target.on)
     return min((_factored(known) for known in covers), key=contact_count)
+
+
+def tree_of_cover(known: Cover) -> Tree | bool:
+    """A cover factored; True or False where it is constant."""
+    if not known.cubes or not all(known.groups):
+        return bool(known.cubes) == (known.kind == "sop")
+    return _factored(known)
 
 
 def _factored(found: Cover) -> Tree:

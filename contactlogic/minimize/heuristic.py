@@ -11,6 +11,7 @@ given that recursion's cubes of the on, free and off rows, which spares it thous
 from __future__ import annotations
 
 import time
+from collections.abc import Sequence
 from functools import cache
 from typing import Any
 
@@ -18,7 +19,7 @@ from contactlogic.child import ChildCrashed, ChildTimedOut, run
 from contactlogic.minimize.cube import Cube
 from contactlogic.truth import Target, all_rows, variable
 
-__all__ = ["cubes_of", "espresso", "irredundant", "run_espresso"]
+__all__ = ["cubes_of", "espresso", "irredundant", "run_espresso", "run_listed"]
 
 Pairs = tuple[tuple[int, int], ...]
 """Cubes as (care, value), plain for the way to the child and back."""
@@ -41,18 +42,34 @@ def espresso(target: Target, *, seconds: float) -> tuple[Cube, ...] | None:
 
 def run_espresso(n: int, on: Pairs, free: Pairs, off: Pairs) -> Pairs:
     """Espresso on cubes of the three kinds of rows; runs in the child."""
-    from pyeda.boolalg.espresso import DTYPE, FTYPE, RTYPE, set_config
+    from pyeda.boolalg.espresso import DTYPE, FTYPE, RTYPE
+
+    return _engine(n, ((1, on), (2, free), (0, off)), FTYPE | DTYPE | RTYPE)
+
+
+def run_listed(n: int, wants: Sequence[tuple[Pairs, Pairs]]) -> list[Pairs]:
+    """Espresso for several loads, each given by cubes that are on and off; all else is free.
+
+    Runs in the child.
+    """
+    from pyeda.boolalg.espresso import FTYPE, RTYPE
+
+    return [_engine(n, ((1, on), (0, off)), FTYPE | RTYPE) for on, off in wants]
+
+
+def _engine(n: int, marked: Sequence[tuple[int, Pairs]], kind: int) -> Pairs:
     from pyeda.boolalg.espresso import espresso as engine
+    from pyeda.boolalg.espresso import set_config
     from pyeda.boolalg.minimization import CONFIG
 
     # the engine's marks: of an input 1 released, 2 operated, 3 either; of the output 1, 0, 2 free
     cover = [
         (tuple(2 if value >> i & 1 else 1 if care >> i & 1 else 3 for i in range(n)), (mark,))
-        for mark, cubes in ((1, on), (2, free), (0, off))
+        for mark, cubes in marked
         for care, value in cubes
     ]
     set_config(**CONFIG)
-    found = engine(n, 1, cover, intype=FTYPE | DTYPE | RTYPE)
+    found = engine(n, 1, cover, intype=kind)
     return tuple(
         sorted(
             (

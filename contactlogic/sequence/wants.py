@@ -2,11 +2,13 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping
+
 from contactlogic.errors import Place, TableError
 from contactlogic.sequence.steps import Expansion
-from contactlogic.truth import Target, all_rows
+from contactlogic.truth import Target, all_rows, table_of
 
-__all__ = ["drive_targets", "ends", "load_targets", "ways"]
+__all__ = ["drive_targets", "ends", "listed_drives", "listed_loads", "load_targets", "ways"]
 
 
 def ways(expansion: Expansion) -> dict[int, tuple[int, ...]]:
@@ -48,45 +50,48 @@ def ends(expansion: Expansion) -> tuple[int, ...]:
     return tuple(state for state in onward if state in kept)
 
 
-def drive_targets(expansion: Expansion) -> dict[str, Target]:
-    """Wanted drive of each coil over all states (design.md section 7, "Drives wanted").
+def listed_drives(expansion: Expansion) -> dict[str, dict[int, int]]:
+    """Wanted drive of each coil by state (design.md section 7, "Drives wanted").
 
     The mover's drive is its next value.  Every other relay holds, except that it is free where
-    its own move is slow and the state is left by a quick move.  States that are not in the list
-    are free, subject to recovery.
+    its own move is slow and the state is left by a quick move: such states are left out.
     """
-    n = len(expansion.columns)
-    on = dict.fromkeys(expansion.relays, 0)
-    held = dict.fromkeys(expansion.relays, 0)
+    wanted: dict[str, dict[int, int]] = {name: {} for name in expansion.relays}
     for step in expansion.steps:
-        bit = 1 << step.state
         quick = expansion.quick(step)
         for i, name in enumerate(expansion.columns):
-            if name not in on:
+            if name not in wanted:
                 continue
             now = step.state >> i & 1
             moves = i in step.movers
-            if not moves and quick and expansion.timing.slow(name, bool(now)):
-                continue
-            held[name] |= bit
-            if now ^ moves:
-                on[name] |= bit
-    full = all_rows(n)
-    return {name: Target(n, on[name], full & ~held[name]) for name in on}
+            if moves or not (quick and expansion.timing.slow(name, bool(now))):
+                wanted[name][step.state] = now ^ moves
+    return wanted
+
+
+def listed_loads(expansion: Expansion) -> dict[str, dict[int, int]]:
+    """Wanted value of each load by state; states in which it is free are left out."""
+    wanted: dict[str, dict[int, int]] = {name: {} for name in expansion.loads}
+    for step in expansion.steps:
+        for name, value in zip(expansion.loads, step.loads, strict=True):
+            if value is not None:
+                wanted[name][step.state] = value
+    return wanted
+
+
+def drive_targets(expansion: Expansion) -> dict[str, Target]:
+    """`listed_drives` as truth tables; states not in the list are free, subject to recovery."""
+    n = len(expansion.columns)
+    return {name: _target(n, values) for name, values in listed_drives(expansion).items()}
 
 
 def load_targets(expansion: Expansion) -> dict[str, Target]:
-    """Wanted behaviour of each load over all states; states not in the list are free."""
+    """`listed_loads` as truth tables; states not in the list are free."""
     n = len(expansion.columns)
-    full = all_rows(n)
-    targets = {}
-    for k, name in enumerate(expansion.loads):
-        on = off = 0
-        for step in expansion.steps:
-            if step.loads[k] is not None:
-                if step.loads[k]:
-                    on |= 1 << step.state
-                else:
-                    off |= 1 << step.state
-        targets[name] = Target(n, on, full & ~(on | off))
-    return targets
+    return {name: _target(n, values) for name, values in listed_loads(expansion).items()}
+
+
+def _target(n: int, values: Mapping[int, int]) -> Target:
+    held = table_of(n, values)
+    on = table_of(n, (state for state, value in values.items() if value))
+    return Target(n, on, all_rows(n) & ~held)
