@@ -212,6 +212,4 @@ def _rows(design: Design, job: Job, facts: Facts) -> list[str]:
     note = f"{count(len(marked), 'row')} marked." if marked else "No row is marked."
     if not whole:
         note = f"The listed rows alone, of {1 << len(job.relays)} that were proved. {note}"
-    if not whole:
-        note = f"The listed rows alone, of {1 << len(job.relays)} that were proved. {note}"
     return [legend, "", note, "", *table_lines(header, rows)]
