@@ -10,12 +10,14 @@ from contactlogic.draw.bridge import arrange_bridge
 from contactlogic.draw.chart import sequence_chart
 from contactlogic.draw.dot import dot_text
 from contactlogic.draw.render import render
+from contactlogic.draw.sheet import Sheet
 from contactlogic.draw.states import state_graph
 from contactlogic.job.model import LoadKind, Supply
 from contactlogic.network import Network
 
 __all__ = [
     "bridge_drawing",
+    "design_sheet",
     "draw_bridge",
     "draw_ladder",
     "ladder_drawing",
@@ -23,6 +25,23 @@ __all__ = [
     "sequence_chart",
     "state_graph",
 ]
+
+
+def design_sheet(
+    design: Design,
+    *,
+    title: str,
+    supply: Supply = Supply(),  # noqa: B008 - frozen
+    kinds: Mapping[str, LoadKind | None] | None = None,
+    separate: Collection[str] = (),
+) -> Sheet:
+    """The sheet of a finished design in its own form, everything tagged with what it shows.
+
+    Parameters as for `ladder_drawing`; `dot_text` turns it into the text of the drawing.
+    """
+    facts = SheetFacts(title, design.fingerprint, supply, kinds or {}, separate)
+    lay_out = arrange if design.form == "ladder" else arrange_bridge
+    return lay_out(design.network, facts)
 
 
 def ladder_drawing(

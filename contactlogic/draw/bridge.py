@@ -28,7 +28,7 @@ from contactlogic.draw.bridge_symbols import (
 )
 from contactlogic.draw.grid import Grid
 from contactlogic.draw.panel import Lettering, SheetFacts
-from contactlogic.draw.sheet import GREY, Line, Pen, Point, Sheet, text_width
+from contactlogic.draw.sheet import GREY, Line, Pen, Point, Sheet, Tag, text_width
 from contactlogic.draw.table import TableRow, draw_footer, draw_table
 from contactlogic.draw.wires import Segment, connect
 from contactlogic.network import Network, Pole
@@ -178,8 +178,9 @@ class _Frame:
         for wire in wires:
             for piece in wire.pieces():
                 _draw_wire(pen, wire.net, piece, uprights)
-        for point in junctions:
-            symbols.junction(pen, point)
+        for net, point in junctions:
+            with pen.tagged(Tag(net=net)):
+                symbols.junction(pen, point)
         self._wire_numbers(pen, ends)
         self._rails(pen)
         for row, y in enumerate(self.y, start=1):
@@ -192,15 +193,19 @@ class _Frame:
         assert part.common is not None
         hinge_left = column[part.common] <= gap
         tee = self._tee(part)
-        if tee:
-            assert part.break_ is not None
-            tee_changeover(pen, x, y, break_right=column[part.break_] > gap)
-        elif part.changeover:
-            straight_changeover(pen, x, y, hinge_left=hinge_left)
-        else:
-            make = part.make is not None
-            symbols.contact(pen, x, y, make=make, hinge_left=hinge_left)
-        pen.texts.append(replace(self.text.name(pole.relay), at=(x, y - _NAME_RISE)))
+        tag = Tag(pole.common, pole.relay)
+        with pen.tagged(tag):
+            if tee:
+                assert part.break_ is not None
+                tee_changeover(pen, x, y, break_right=column[part.break_] > gap)
+            elif part.changeover:
+                straight_changeover(pen, x, y, hinge_left=hinge_left, throw=pole.break_)
+            else:
+                make = part.make is not None
+                throw = pole.make if make else pole.break_
+                symbols.contact(pen, x, y, make=make, hinge_left=hinge_left, throw=throw)
+            pen.spot((x, y))
+        pen.texts.append(replace(self.text.name(pole.relay), at=(x, y - _NAME_RISE), tag=tag))
         ends = []
         lead_marks = [m for m in (marks.common, marks.make, marks.break_) if m is not None]
         for i, (lead, mark) in enumerate(zip(leads_of(part, column), lead_marks, strict=True)):
@@ -221,11 +226,14 @@ class _Frame:
     def _load(self, pen: Pen, name: str, part: Part, y: float) -> list[_End]:
         x, half = self.load_x, symbols.LOAD_HALF
         kind = self.facts.kinds.get(name)
-        symbols.load(pen, x, y, kind)
+        with pen.tagged(Tag(load=name)):
+            symbols.load(pen, x, y, kind)
+            pen.spot((x, y))
         for mark, way in zip(load_marks(kind), (-1, 1), strict=True):
             offset = half + 3 + text_width(mark, _MARK) / 2
             pen.text((x + way * offset, y - _LABEL_RISE), mark, _MARK)
-        pen.texts.append(replace(self.text.name(name), at=(x, y - _NAME_RISE)))
+        written = self.text.name(name)
+        pen.texts.append(replace(written, at=(x, y - _NAME_RISE), tag=Tag(load=name)))
         room = half + 8 + text_width("X1", _MARK)
         label = (x + room + self.right_rail) / 2
         ends = [_End(RETURN, (x + half, y), self.right_rail, label)]
@@ -283,7 +291,8 @@ class _Frame:
             (self.left_rail, text.feed, self.network.supply, 1),
             (self.right_rail, text.back, RETURN, -1),
         ):
-            pen.lines.append(Line((x, self.rail_top), (x, self.rail_bottom), "rail", 2.8))
+            ends = (x, self.rail_top), (x, self.rail_bottom)
+            pen.lines.append(Line(*ends, "rail", 2.8, tag=Tag(net=net)))
             pen.text((x, self.rail_top - 12), label, _RAIL, bold=True)
             number = str(text.numbers[net])
             at = (x + way * (5 + text_width(number, _NUMBER) / 2), self.rail_top + 6)
@@ -305,6 +314,7 @@ def _draw_wire(
     """A straight piece, with a hop over every vertical of another net."""
     start, end = sorted(piece)
     y = start[1]
+    tag = Tag(net=net)
     if y == end[1]:
         passed = {
             top[0]
@@ -314,11 +324,12 @@ def _draw_wire(
             and min(top[1], bottom[1]) <= y <= max(top[1], bottom[1])
         }
         for x in sorted(passed):
-            pen.lines.append(Line(start, (round(x - _HOP, 2), y), "wire"))
+            pen.lines.append(Line(start, (round(x - _HOP, 2), y), "wire", tag=tag))
             arc = [
                 (round(x - _HOP * cos(pi * k / 8), 2), round(y - _HOP * sin(pi * k / 8), 2))
                 for k in range(9)
             ]
-            pen.path(arc, "wire")
+            with pen.tagged(tag):
+                pen.path(arc, "wire")
             start = (round(x + _HOP, 2), y)
-    pen.lines.append(Line(start, end, "wire"))
+    pen.lines.append(Line(start, end, "wire", tag=tag))

@@ -7,7 +7,7 @@ has its throws at left and right of one wire and its common below.
 
 from __future__ import annotations
 
-from contactlogic.draw.sheet import Pen
+from contactlogic.draw.sheet import Pen, Tag
 from contactlogic.draw.symbols import CONTACT_HALF
 
 __all__ = ["DROP", "TEE_HALF", "straight_changeover", "tee_changeover"]
@@ -18,15 +18,18 @@ _BLADE = 1.7
 _OUTLINE = 1.2
 
 
-def straight_changeover(pen: Pen, x: float, y: float, *, hinge_left: bool) -> None:
+def straight_changeover(
+    pen: Pen, x: float, y: float, *, hinge_left: bool, throw: str | None = None
+) -> None:
     """Common and make on the wire through `y` as in a make contact, the break `DROP` below.
 
-    The common is at `x -+ CONTACT_HALF`, both throws at the other end.
+    The common is at `x -+ CONTACT_HALF`, both throws at the other end; `throw` is the break's net.
     """
     side = 1.0 if hinge_left else -1.0
     hinge, tip = x - side * CONTACT_HALF, x + side * CONTACT_HALF
-    pen.path([(hinge, y), (tip + side * 4, y + 13)], weight=_BLADE)
-    pen.path([(tip, y + DROP), (tip, y + 11.5)], weight=_OUTLINE)
+    pen.blade((hinge, y), (tip + side * 4, y + 13), (tip, y), _BLADE)
+    with pen.tagged(Tag(throw)):
+        pen.path([(tip, y + DROP), (tip, y + 11.5)], weight=_OUTLINE)
 
 
 def tee_changeover(pen: Pen, x: float, y: float, *, break_right: bool) -> None:
@@ -34,4 +37,4 @@ def tee_changeover(pen: Pen, x: float, y: float, *, break_right: bool) -> None:
     side = 1.0 if break_right else -1.0
     hinge = (x, y + DROP - 8)
     pen.path([hinge, (x, y + DROP)])
-    pen.path([hinge, (x + side * 10.5, y - 5)], weight=_BLADE)
+    pen.blade(hinge, (x + side * 10.5, y - 5), (x - side * 10.5, y - 5), _BLADE)

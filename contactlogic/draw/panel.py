@@ -11,7 +11,17 @@ from dataclasses import dataclass, field, replace
 
 from contactlogic.draw import symbols
 from contactlogic.draw.grid import Cell, Grid, RungRow
-from contactlogic.draw.sheet import GREY, Line, Pen, Point, Text, short_names, shorten, text_width
+from contactlogic.draw.sheet import (
+    GREY,
+    Line,
+    Pen,
+    Point,
+    Tag,
+    Text,
+    short_names,
+    shorten,
+    text_width,
+)
 from contactlogic.draw.wires import Segment, Wire, connect
 from contactlogic.job.model import LoadKind, Supply
 from contactlogic.network import Network
@@ -203,24 +213,31 @@ class Panel:
         wires, junctions = connect(self._segments(contacts, loads))
         for wire in wires:
             for start, end in wire.pieces():
-                pen.lines.append(Line(start, end, "wire"))
+                pen.lines.append(Line(start, end, "wire", tag=Tag(net=wire.net)))
             self._wire_number(pen, wire, taken)
-        for point in junctions:
-            symbols.junction(pen, point)
+        for net, point in junctions:
+            with pen.tagged(Tag(net=net)):
+                symbols.junction(pen, point)
         self._references(pen)
         self._rails(pen)
 
     def _contact(self, pen: Pen, cell: Cell) -> _PlacedContact:
         contact, x, y = cell.leaf.contact, self.column[cell.column], self.y[cell.row]
         hinge_left = contact.common == cell.leaf.left
-        symbols.contact(pen, x, y, make=contact.make, hinge_left=hinge_left)
+        tag = Tag(contact.common, contact.relay)
+        with pen.tagged(tag):
+            symbols.contact(
+                pen, x, y, make=contact.make, hinge_left=hinge_left, throw=contact.throw
+            )
+            pen.spot((x, y))
         marks = pole_marks(contact.pole, self.lettering.facts.separate)
         throw_mark = (marks.make if contact.make else marks.break_) or ""
         side = 1 if hinge_left else -1
         for mark, way, gap in ((marks.common, -side, 2.5), (throw_mark, side, 6.0)):
             offset = symbols.CONTACT_HALF + gap + text_width(mark, _MARK) / 2
             pen.text((x + way * offset, y - _LABEL_RISE), mark, _MARK)
-        pen.texts.append(replace(self.lettering.name(contact.relay), at=(x, y - _NAME_RISE)))
+        name = self.lettering.name(contact.relay)
+        pen.texts.append(replace(name, at=(x, y - _NAME_RISE), tag=tag))
         pen.text((x, y + _NOTE_DROP[contact.make]), self.lettering.note(cell), _NOTE, colour=GREY)
         half = symbols.CONTACT_HALF
         return _PlacedContact(cell, (x - half, y), (x + half, y))
@@ -228,11 +245,14 @@ class Panel:
     def _load(self, pen: Pen, row: RungRow, y: float) -> _PlacedLoad:
         name, x, half = row.rung.load, self.load_x, symbols.LOAD_HALF
         kind = self.lettering.facts.kinds.get(name)
-        symbols.load(pen, x, y, kind)
+        with pen.tagged(Tag(load=name)):
+            symbols.load(pen, x, y, kind)
+            pen.spot((x, y))
         for mark, way in zip(load_marks(kind), (-1, 1), strict=True):
             offset = half + 3 + text_width(mark, _MARK) / 2
             pen.text((x + way * offset, y - _LABEL_RISE), mark, _MARK)
-        pen.texts.append(replace(self.lettering.name(name), at=(x, y - _NAME_RISE)))
+        written = self.lettering.name(name)
+        pen.texts.append(replace(written, at=(x, y - _NAME_RISE), tag=Tag(load=name)))
         pen.text((self.left_rail - _RUNG_LEFT, y), str(row.number), _RUNG, colour=GREY)
         if row.rung.net is None:
             at = x - half - 24 - text_width(_NEVER, _NOTE) / 2
@@ -294,7 +314,8 @@ class Panel:
         for row, y in zip(self.rows, self.y.values(), strict=True):
             if isinstance(row, RungRow) and row.rung.reference:
                 net, end = row.rung.start, self._open_end(y)
-                symbols.open_terminal(pen, end)
+                with pen.tagged(Tag(net=net)):
+                    symbols.open_terminal(pen, end)
                 x = (self.left_rail + end[0] - 4) / 2
                 pen.text((x, y - 5.5), f"wire {text.numbers[net]}", _NOTE)
                 pen.text((x, y + 5.5), f"from rung {text.grid.sent[net].rung}", _NOTE)
@@ -305,7 +326,8 @@ class Panel:
             (self.left_rail, text.feed, text.network.supply, 1),
             (self.right_rail, text.back, RETURN, -1),
         ):
-            pen.lines.append(Line((x, self.rail_top), (x, self.rail_bottom), "rail", 2.8))
+            ends = (x, self.rail_top), (x, self.rail_bottom)
+            pen.lines.append(Line(*ends, "rail", 2.8, tag=Tag(net=net)))
             pen.text((x, self.rail_top - 12), label, _RAIL, bold=True)
             number = str(text.numbers[net])
             at = (x + way * (5 + text_width(number, _NUMBER) / 2), self.rail_top + 6)

@@ -1,16 +1,18 @@
 """A sheet of lines, circles and text at fixed positions: what every drawing is made of.
 
-Nothing here knows about ladders.  Units are points (1/72 inch), x to the right, y DOWN from the
-top left corner of the sheet.  Text is centred on its position.  Widths of text are estimated from
-the published advance widths of Helvetica, since the layout must know them before any renderer
-runs.
+Nothing here knows about ladders.  What is drawn may be tagged with the net, relay or load that it
+belongs to: pictures on paper ignore that, a live drawing goes by it.  Units are points (1/72
+inch), x to the right, y DOWN from the top left corner of the sheet.  Text is centred on its
+position.  Widths of text are estimated from the published advance widths of Helvetica, since the
+layout must know them before any renderer runs.
 """
 
 from __future__ import annotations
 
 import unicodedata
-from collections.abc import Iterable, Sequence
-from dataclasses import dataclass, field
+from collections.abc import Iterable, Iterator, Sequence
+from contextlib import contextmanager
+from dataclasses import dataclass, field, replace
 from itertools import pairwise
 from typing import Literal
 
@@ -23,6 +25,8 @@ __all__ = [
     "Pen",
     "Point",
     "Sheet",
+    "Spot",
+    "Tag",
     "Text",
     "plain",
     "short_names",
@@ -50,6 +54,35 @@ _BOLD = 1.09  # Helvetica-Bold is at most about this much wider over whole words
 
 
 @dataclass(frozen=True)
+class Tag:
+    """What a mark on a sheet belongs to.
+
+    Args:
+        net: the net that it is part of.
+        relay: the relay whose contact it shows.
+        load: the load whose symbol it is part of.
+        operated: of a blade, where its end lies while its relay is operated; it turns about its
+            start.
+    """
+
+    net: str | None = None
+    relay: str | None = None
+    load: str | None = None
+    operated: Point | None = None
+
+
+_NO_TAG = Tag()
+
+
+@dataclass(frozen=True)
+class Spot:
+    """The centre of a symbol, on the line of its wire."""
+
+    at: Point
+    tag: Tag
+
+
+@dataclass(frozen=True)
 class Line:
     """A straight line; `kind` becomes its class in the picture."""
 
@@ -58,6 +91,7 @@ class Line:
     kind: LineKind = "symbol"
     weight: float = 1.1
     colour: str = BLACK
+    tag: Tag = _NO_TAG
 
 
 @dataclass(frozen=True)
@@ -67,6 +101,7 @@ class Circle:
     centre: Point
     radius: float
     filled: bool = False
+    tag: Tag = _NO_TAG
 
 
 @dataclass(frozen=True)
@@ -79,6 +114,7 @@ class Text:
     bold: bool = False
     slant: bool = False
     colour: str = BLACK
+    tag: Tag = _NO_TAG
 
     @property
     def width(self) -> float:
@@ -96,6 +132,7 @@ class Sheet:
     lines: tuple[Line, ...] = ()
     circles: tuple[Circle, ...] = ()
     texts: tuple[Text, ...] = ()
+    spots: tuple[Spot, ...] = ()
 
 
 @dataclass
@@ -105,11 +142,35 @@ class Pen:
     lines: list[Line] = field(default_factory=list)
     circles: list[Circle] = field(default_factory=list)
     texts: list[Text] = field(default_factory=list)
+    spots: list[Spot] = field(default_factory=list)
+    tag: Tag = _NO_TAG
+
+    @contextmanager
+    def tagged(self, tag: Tag) -> Iterator[None]:
+        """Tag all that is put through the methods of the pen meanwhile."""
+        before, self.tag = self.tag, tag
+        try:
+            yield
+        finally:
+            self.tag = before
+
+    def spot(self, at: Point) -> None:
+        """Remember where a symbol stands."""
+        self.spots.append(Spot(at, self.tag))
 
     def path(self, points: Sequence[Point], kind: LineKind = "symbol", weight: float = 1.1) -> None:
         """Straight lines from each point to the next."""
         for start, end in pairwise(points):
-            self.lines.append(Line(start, end, kind, weight))
+            self.lines.append(Line(start, end, kind, weight, tag=self.tag))
+
+    def blade(self, hinge: Point, released: Point, operated: Point, weight: float) -> None:
+        """A contact's blade, drawn released."""
+        tag = replace(self.tag, operated=operated)
+        self.lines.append(Line(hinge, released, weight=weight, tag=tag))
+
+    def circle(self, centre: Point, radius: float, *, filled: bool = False) -> None:
+        """A circle."""
+        self.circles.append(Circle(centre, radius, filled, self.tag))
 
     def text(
         self,
@@ -123,12 +184,18 @@ class Pen:
     ) -> None:
         """Put a line of text, if there is any."""
         if text:
-            self.texts.append(Text(at, text, size, bold, slant, colour))
+            self.texts.append(Text(at, text, size, bold, slant, colour, self.tag))
 
     def sheet(self, width: float, height: float, title: str) -> Sheet:
         """The finished sheet."""
         return Sheet(
-            width, height, title, tuple(self.lines), tuple(self.circles), tuple(self.texts)
+            width,
+            height,
+            title,
+            tuple(self.lines),
+            tuple(self.circles),
+            tuple(self.texts),
+            tuple(self.spots),
         )
 
 

@@ -10,7 +10,7 @@ from __future__ import annotations
 
 from math import sqrt
 
-from contactlogic.draw.sheet import Circle, Pen, Point
+from contactlogic.draw.sheet import Pen, Point, Tag
 from contactlogic.job.model import LoadKind
 
 __all__ = ["CONTACT_HALF", "LOAD_HALF", "contact", "junction", "load", "open_terminal"]
@@ -21,32 +21,35 @@ _BLADE = 1.7
 _OUTLINE = 1.2
 
 
-def contact(pen: Pen, x: float, y: float, *, make: bool, hinge_left: bool) -> None:
-    """A make or break contact; the blade hangs on its common terminal."""
+def contact(
+    pen: Pen, x: float, y: float, *, make: bool, hinge_left: bool, throw: str | None = None
+) -> None:
+    """A make or break contact; the blade hangs on its common terminal, `throw` is the other net."""
     side = 1.0 if hinge_left else -1.0
     hinge, tip = x - side * CONTACT_HALF, x + side * CONTACT_HALF
     if make:
-        pen.path([(hinge, y), (tip, y + 11.5)], weight=_BLADE)
+        pen.blade((hinge, y), (tip, y + 11.5), (tip, y), _BLADE)
     else:
-        pen.path([(hinge, y), (tip + side * 4, y - 9.5)], weight=_BLADE)
-        pen.path([(tip, y), (tip, y - 9.8)], weight=_OUTLINE)
+        pen.blade((hinge, y), (tip + side * 4, y - 9.5), (tip + side, y - 18.5), _BLADE)
+        with pen.tagged(Tag(throw)):
+            pen.path([(tip, y), (tip, y - 9.8)], weight=_OUTLINE)
 
 
 def junction(pen: Pen, at: Point) -> None:
     """The dot where three or more wires meet."""
-    pen.circles.append(Circle(at, 2.9, filled=True))
+    pen.circle(at, 2.9, filled=True)
 
 
 def open_terminal(pen: Pen, at: Point) -> None:
     """A small ring at the left end of a wire that comes from elsewhere on the sheet."""
-    pen.circles.append(Circle((at[0] - 2.6, at[1]), 2.6))
+    pen.circle((at[0] - 2.6, at[1]), 2.6)
 
 
 def load(pen: Pen, x: float, y: float, kind: LoadKind | None) -> None:
     """A load by its kind; a kind that is not given is drawn as "other", a plain rectangle."""
     r = LOAD_HALF
     if kind == "lamp":
-        pen.circles.append(Circle((x, y), r))
+        pen.circle((x, y), r)
         d = r / sqrt(2)
         pen.path([(x - d, y - d), (x + d, y + d)], weight=_OUTLINE)
         pen.path([(x - d, y + d), (x + d, y - d)], weight=_OUTLINE)
@@ -54,7 +57,7 @@ def load(pen: Pen, x: float, y: float, kind: LoadKind | None) -> None:
         body = [(x + r, y - 14.5), (x - 1, y - 7), (x - r, y - 7), (x - r, y + 7), (x - 1, y + 7)]
         pen.path([*body, (x + r, y + 14.5), (x + r, y - 14.5)], weight=_OUTLINE)
     elif kind == "motor":
-        pen.circles.append(Circle((x, y), r))
+        pen.circle((x, y), r)
         pen.text((x, y), "M", 13, bold=True)
     elif kind == "coil":
         _rectangle(pen, x, y, r, 8.5)

@@ -37,18 +37,21 @@ class Wire:
         return tuple(pairwise(self.points))
 
 
-def connect(segments: Iterable[Segment]) -> tuple[tuple[Wire, ...], tuple[Point, ...]]:
-    """Stretches and junction points of all nets, nets in order of first appearance."""
+def connect(
+    segments: Iterable[Segment],
+) -> tuple[tuple[Wire, ...], tuple[tuple[str, Point], ...]]:
+    """Stretches of all nets, nets in order of first appearance; junctions, each with its net."""
     by_net: dict[str, list[tuple[Point, Point]]] = {}
     for segment in segments:
         if segment.start != segment.end:
             pair = (min(segment.start, segment.end), max(segment.start, segment.end))
             by_net.setdefault(segment.net, []).append(pair)
     wires: list[Wire] = []
-    junctions: list[Point] = []
+    junctions: list[tuple[str, Point]] = []
     for net, pairs in by_net.items():
         beside = _graph(pairs)
-        junctions += sorted(point for point, others in beside.items() if len(others) > 2)
+        points = sorted(point for point, others in beside.items() if len(others) > 2)
+        junctions += [(net, point) for point in points]
         wires += [Wire(net, _straightened(path)) for path in _paths(beside)]
     return tuple(wires), tuple(junctions)
 
