@@ -137,16 +137,20 @@ def wire_sequence(job: SequenceJob | PatternJob, search: Search) -> SequencerRes
             hint="contactlogic recover proves the recovery of larger sequencers",
         )
     result = _wired(table_job(job, expansion), table, expansion, search)
-    recoveries, gaps = [], []
-    states = tuple(step.state for step in expansion.steps)
-    for design in result.designs:
+    recoveries: list[Recovery] = []
+    gaps: list[tuple[Transit, ...]] = []
+    for number, design in enumerate(result.designs):
+        if number and design.network == result.designs[number - 1].network:
+            recoveries.append(recoveries[-1])
+            gaps.append(gaps[-1])
+            continue
         network = folded(design.network, result.repeaters)
         found = prove_network(network, table.timing, expansion, inputs_return=table.inputs_return)
         if found.verdict != "recovers":
             raise _not_self_starting(table, found, len(expansion.columns))
         recoveries.append(found)
         motion = network_motion(network, table.timing, expansion)
-        gaps.append(tuple(transits(network, motion, states)))
+        gaps.append(transits(network, motion, [step.state for step in expansion.steps]))
     designs = tuple(_with_notes(design, table.timing) for design in result.designs)
     return SequencerResult(
         result.job,

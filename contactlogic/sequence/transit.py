@@ -64,11 +64,9 @@ def transits(
             if not motion.busy[i][start // motion.chunk]:
                 continue
             moving = motion.enabled[i, start:stop]
-            for kind, coil, states in _unsteady(network, mover, start, stop):
-                seen = states & moving
-                if seen.any():
-                    entry = tally.setdefault((mover, coil, kind), _Tally())
-                    entry.add(seen, wanted[start:stop], start)
+            for kind, coil, seen in _unsteady(network, mover, moving, start):
+                entry = tally.setdefault((mover, coil, kind), _Tally())
+                entry.add(seen, wanted[start:stop], start)
     order = {name: k for k, name in enumerate(network.relays)}
     found = sorted(tally.items(), key=lambda e: (order[e[0][0]], order[e[0][1]], e[0][2] != "gap"))
     return tuple(
@@ -101,19 +99,21 @@ class _Tally:
 
 
 def _unsteady(
-    network: Network, mover: str, start: int, stop: int
+    network: Network, mover: str, able: Words, start: int
 ) -> list[tuple[Literal["gap", "flash"], str, Words]]:
-    """Gaps and flashes while one relay moves, whatever state it moves from."""
+    """Gaps and flashes while one relay moves from the states it may move from.
+
+    Args:
+        able: words of those states, from word `start` on.
+    """
     import numpy as np
 
     own = [pole for pole in network.poles if pole.relay == mover]
     if not own:
         return []
-    states = (1 << 64 * (stop - start)) - 1
-    values = {
-        name: int.from_bytes(words.astype("<u8").tobytes(), "little")
-        for name, words in variables(network.relays, start, stop).items()
-    }
+    stop = start + len(able)
+    states = _bits(able)
+    values = {name: _bits(words) for name, words in variables(network.relays, start, stop).items()}
     fixed = [
         (c.common, c.throw, values[c.relay] if c.make else states & ~values[c.relay])
         for c in network.contacts()
@@ -126,7 +126,7 @@ def _unsteady(
 
     def add(kind: Literal["gap", "flash"], coil: str, where: int) -> None:
         if where:
-            packed = np.frombuffer(where.to_bytes(8 * (stop - start), "little"), dtype="<u8")
+            packed = np.frombuffer(where.to_bytes(8 * len(able), "little"), dtype="<u8")
             found.append((kind, coil, packed.astype(np.uint64)))
 
     for coil in network.relays:
@@ -134,6 +134,13 @@ def _unsteady(
         if net is None:
             continue
         on, off = operated.get(net, 0), released.get(net, 0)
-        add("gap", coil, moving.can_leave(net, on & off))
-        add("flash", coil, moving.can_feed(net, every.get(net, 0) & ~(on | off)))
+        fed, dark = on & off, every.get(net, 0) & ~(on | off)
+        if fed:  # most coils are out of the mover's reach: asking costs more than the answer
+            add("gap", coil, moving.can_leave(net, fed))
+        if dark:
+            add("flash", coil, moving.can_feed(net, dark))
     return found
+
+
+def _bits(words: Words) -> int:
+    return int.from_bytes(words.astype("<u8").tobytes(), "little")
