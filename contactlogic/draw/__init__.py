@@ -12,7 +12,7 @@ from contactlogic.draw.dot import dot_text
 from contactlogic.draw.render import render
 from contactlogic.draw.sheet import Sheet
 from contactlogic.draw.states import state_graph
-from contactlogic.job.model import LoadKind, Supply
+from contactlogic.job.model import Fittings, LoadKind, Supply
 from contactlogic.network import Network
 
 __all__ = [
@@ -34,12 +34,13 @@ def design_sheet(
     supply: Supply = Supply(),  # noqa: B008 - frozen
     kinds: Mapping[str, LoadKind | None] | None = None,
     separate: Collection[str] = (),
+    fittings: Mapping[str, Fittings] | None = None,
 ) -> Sheet:
     """The sheet of a finished design in its own form, everything tagged with what it shows.
 
     Parameters as for `ladder_drawing`; `dot_text` turns it into the text of the drawing.
     """
-    facts = SheetFacts(title, design.fingerprint, supply, kinds or {}, separate)
+    facts = SheetFacts(title, design.fingerprint, supply, kinds or {}, separate, fittings or {})
     lay_out = arrange if design.form == "ladder" else arrange_bridge
     return lay_out(design.network, facts)
 
@@ -52,6 +53,7 @@ def ladder_drawing(
     supply: Supply = Supply(),  # noqa: B008 - frozen
     kinds: Mapping[str, LoadKind | None] | None = None,
     separate: Collection[str] = (),
+    fittings: Mapping[str, Fittings] | None = None,
 ) -> str:
     """The ladder drawing of a network, as text in the DOT language for `render`.
 
@@ -62,11 +64,12 @@ def ladder_drawing(
         supply: labels of the rails; "supply" and "return" where not given.
         kinds: kind of each load, for its symbol; a plain rectangle where not given.
         separate: relays with separate makes and breaks, for their terminal marks.
+        fittings: parts fitted to loads, by load.
 
     Raises:
         NotALadder: the network does not keep the ladder definition.
     """
-    facts = SheetFacts(title, fingerprint, supply, kinds or {}, separate)
+    facts = SheetFacts(title, fingerprint, supply, kinds or {}, separate, fittings or {})
     return dot_text(arrange(network, facts))
 
 
@@ -77,6 +80,7 @@ def draw_ladder(
     supply: Supply = Supply(),  # noqa: B008 - frozen
     kinds: Mapping[str, LoadKind | None] | None = None,
     separate: Collection[str] = (),
+    fittings: Mapping[str, Fittings] | None = None,
 ) -> str:
     """`ladder_drawing` of a finished design."""
     return ladder_drawing(
@@ -86,6 +90,7 @@ def draw_ladder(
         supply=supply,
         kinds=kinds,
         separate=separate,
+        fittings=fittings,
     )
 
 
@@ -97,6 +102,7 @@ def bridge_drawing(
     supply: Supply = Supply(),  # noqa: B008 - frozen
     kinds: Mapping[str, LoadKind | None] | None = None,
     separate: Collection[str] = (),
+    fittings: Mapping[str, Fittings] | None = None,
 ) -> str:
     """The drawing of any two-directional network, as text in the DOT language for `render`.
 
@@ -106,7 +112,7 @@ def bridge_drawing(
     Raises:
         ValueError: a contact joins a net to itself.
     """
-    facts = SheetFacts(title, fingerprint, supply, kinds or {}, separate)
+    facts = SheetFacts(title, fingerprint, supply, kinds or {}, separate, fittings or {})
     return dot_text(arrange_bridge(network, facts))
 
 
@@ -117,6 +123,7 @@ def draw_bridge(
     supply: Supply = Supply(),  # noqa: B008 - frozen
     kinds: Mapping[str, LoadKind | None] | None = None,
     separate: Collection[str] = (),
+    fittings: Mapping[str, Fittings] | None = None,
 ) -> str:
     """`bridge_drawing` of a finished design."""
     return bridge_drawing(
@@ -126,4 +133,5 @@ def draw_bridge(
         supply=supply,
         kinds=kinds,
         separate=separate,
+        fittings=fittings,
     )

@@ -11,7 +11,7 @@ from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, replace
 from math import cos, pi, sin
 
-from contactlogic.draw import symbols
+from contactlogic.draw import fitting_symbols, symbols
 from contactlogic.draw.bridge_order import (
     Arrangement,
     Part,
@@ -31,6 +31,7 @@ from contactlogic.draw.panel import Lettering, SheetFacts
 from contactlogic.draw.sheet import GREY, Line, Pen, Point, Sheet, Tag, text_width
 from contactlogic.draw.table import TableRow, draw_footer, draw_table
 from contactlogic.draw.wires import Segment, connect
+from contactlogic.job.model import Fittings
 from contactlogic.network import Network, Pole
 from contactlogic.terminals import RETURN, load_marks, pole_marks
 
@@ -102,7 +103,9 @@ class _Frame:
         below = [14.0] * rows
         for name, part, row, _ in self._named():
             if part.load:
-                need = 22.0 if self.facts.kinds.get(name) == "valve" else 16.0
+                kind = self.facts.kinds.get(name)
+                under = fitting_symbols.drop(self._fitted(name, part), kind)
+                need = max(22.0 if kind == "valve" else 16.0, under)
             else:
                 need = DROP + 8 if part.changeover else 14.0
             below[row] = max(below[row], need)
@@ -121,14 +124,19 @@ class _Frame:
         side = text.mark_room + text.number_room
         wide = [_NARROW] * len(self.nets)
         load_box = 2 * (symbols.LOAD_HALF + 6 + text_width("X1", _MARK))
+        in_line = 0.0
         for name, part, _, gap in self._named():
             if gap is None:
                 load_box = max(load_box, text.name(name).width + 6)
+                parts = self._fitted(name, part)
+                load_box = max(load_box, fitting_symbols.text_room(parts) + 6)
+                in_line = max(in_line, fitting_symbols.in_line_room(parts))
                 note = text_width(_NEVER, _NOTE) + 20 if part.common is None else 0.0
                 wide[-1] = max(wide[-1], text.number_room + 8, note)
             else:
                 need = max(2 * (symbols.CONTACT_HALF + side), text.name(name).width + 12)
                 wide[gap] = max(wide[gap], need)
+        load_box += 2 * in_line
         spare = max(0.0, _LEAST_WIDTH - sum(wide) - load_box - text.number_room)
         stretched = [gap for gap, width in enumerate(wide) if width > _NARROW] or [0]
         ease = min(_EASE, spare / (len(stretched) + 1))
@@ -234,6 +242,10 @@ class _Frame:
             pen.text((x + way * offset, y - _LABEL_RISE), mark, _MARK)
         written = self.text.name(name)
         pen.texts.append(replace(written, at=(x, y - _NAME_RISE), tag=Tag(load=name)))
+        parts = self._fitted(name, part)
+        with pen.tagged(Tag(net=part.common if part.common is None else self.nets[part.common])):
+            fed = fitting_symbols.in_line(pen, x, y, parts)
+        fitting_symbols.across(pen, x, y, parts, kind, positive=self.facts.supply.positive)
         room = half + 8 + text_width("X1", _MARK)
         label = (x + room + self.right_rail) / 2
         ends = [_End(RETURN, (x + half, y), self.right_rail, label)]
@@ -241,9 +253,13 @@ class _Frame:
             pen.text((x - half - 24 - text_width(_NEVER, _NOTE) / 2, y), _NEVER, _NOTE, colour=GREY)
         else:
             at = self.x[self.order.columns[part.common]]
-            label = x - room - self.text.number_room / 2
-            ends.append(_End(self.nets[part.common], (x - half, y), at, label))
+            label = min(x - room, fed) - self.text.number_room / 2
+            ends.append(_End(self.nets[part.common], (fed, y), at, label))
         return ends
+
+    def _fitted(self, name: str, part: Part) -> Fittings:
+        """What is fitted to a load; nothing where it is left unwired."""
+        return Fittings() if part.common is None else self.facts.fittings.get(name, Fittings())
 
     def _segments(self, ends: Sequence[_End]) -> list[Segment]:
         found = [Segment(end.net, end.at, (end.column, end.at[1])) for end in ends]

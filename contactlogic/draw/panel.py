@@ -9,7 +9,7 @@ from __future__ import annotations
 from collections.abc import Collection, Mapping
 from dataclasses import dataclass, field, replace
 
-from contactlogic.draw import symbols
+from contactlogic.draw import fitting_symbols, symbols
 from contactlogic.draw.grid import Cell, Grid, RungRow
 from contactlogic.draw.sheet import (
     GREY,
@@ -23,7 +23,7 @@ from contactlogic.draw.sheet import (
     text_width,
 )
 from contactlogic.draw.wires import Segment, Wire, connect
-from contactlogic.job.model import LoadKind, Supply
+from contactlogic.job.model import Fittings, LoadKind, Supply
 from contactlogic.network import Network
 from contactlogic.terminals import RETURN, load_marks, pole_marks, wire_numbers
 
@@ -49,6 +49,7 @@ class SheetFacts:
     supply: Supply = Supply()  # noqa: RUF009 - frozen
     kinds: Mapping[str, LoadKind | None] = field(default_factory=dict)
     separate: Collection[str] = ()
+    fittings: Mapping[str, Fittings] = field(default_factory=dict)
 
 
 class Lettering:
@@ -145,6 +146,9 @@ class Panel:
                 y += below[i - 1] + airy + (14.0 if rung else 4.0)
             if isinstance(row, RungRow) and kinds.get(row.rung.load) == "valve":
                 below[i] = max(below[i], 22.0)
+            if isinstance(row, RungRow):
+                kind = kinds.get(row.rung.load)
+                below[i] = max(below[i], fitting_symbols.drop(self._fitted(row), kind))
             y += _ABOVE
             self.y[self.first + i] = round(y, 2)
         self.rail_bottom = round(y + below.get(len(self.rows) - 1, 0.0) + 22, 2)
@@ -172,9 +176,14 @@ class Panel:
             short = text_width(_NEVER, _NOTE) + 30 - sum(box) - sum(before) - sum(after)
             after[-1] += max(0.0, short)
         load_box = 2 * (symbols.LOAD_HALF + 6 + text_width("X1", _MARK))
+        in_line = 0.0
         for row in self.rows:
             if isinstance(row, RungRow):
                 load_box = max(load_box, text.name(row.rung.load).width + 6)
+                parts = self._fitted(row)
+                load_box = max(load_box, fitting_symbols.text_room(parts) + 6)
+                in_line = max(in_line, fitting_symbols.in_line_room(parts))
+        load_box += 2 * in_line
         natural = sum(box) + sum(before) + sum(after) + load_box + text.number_room
         spare = max(0.0, self.room - natural)
         ease = min(_EASE, spare / (2 * columns + 4))
@@ -253,11 +262,20 @@ class Panel:
             pen.text((x + way * offset, y - _LABEL_RISE), mark, _MARK)
         written = self.lettering.name(name)
         pen.texts.append(replace(written, at=(x, y - _NAME_RISE), tag=Tag(load=name)))
+        parts, positive = self._fitted(row), self.lettering.facts.supply.positive
+        with pen.tagged(Tag(net=row.rung.net)):
+            fed = fitting_symbols.in_line(pen, x, y, parts)
+        fitting_symbols.across(pen, x, y, parts, kind, positive=positive)
         pen.text((self.left_rail - _RUNG_LEFT, y), str(row.number), _RUNG, colour=GREY)
         if row.rung.net is None:
             at = x - half - 24 - text_width(_NEVER, _NOTE) / 2
             pen.text((at, y), _NEVER, _NOTE, colour=GREY)
-        return _PlacedLoad((x - half, y), (x + half, y))
+        return _PlacedLoad((fed, y), (x + half, y))
+
+    def _fitted(self, row: RungRow) -> Fittings:
+        """What is fitted to a load; nothing where it is left unwired."""
+        known = self.lettering.facts.fittings.get(row.rung.load, Fittings())
+        return Fittings() if row.rung.net is None else known
 
     def _segments(self, contacts: list[_PlacedContact], loads: list[_PlacedLoad]) -> list[Segment]:
         found: list[Segment] = []
@@ -271,7 +289,7 @@ class Panel:
             found.append(Segment(leaf.right, placed.far, (self.border[column + 1], y)))
         for across in self.across:
             y = self.y[across.row]
-            end = self.load_x - symbols.LOAD_HALF if across.end is None else self.border[across.end]
+            end = self._load_end(across.row) if across.end is None else self.border[across.end]
             found.append(Segment(across.net, (self.border[across.start], y), (end, y)))
         for down in self.down:
             x = self.border[down.border]
@@ -280,6 +298,14 @@ class Panel:
             at_rail = (self.right_rail, load.returned[1])
             found.append(Segment(RETURN, load.returned, at_rail))
         return found
+
+    def _load_end(self, row: int) -> float:
+        """Where the wire to the load of a row ends."""
+        here = self.rows[row - self.first]
+        if not isinstance(here, RungRow):
+            return self.load_x - symbols.LOAD_HALF
+        room = fitting_symbols.in_line_room(self._fitted(here))
+        return self.load_x - symbols.LOAD_HALF - room
 
     def _wire_number(self, pen: Pen, wire: Wire, taken: Mapping[Point, float]) -> None:
         """The number on the longest horizontal piece, clear of terminal marks."""

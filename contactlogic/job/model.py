@@ -131,6 +131,11 @@ class Supply:
     return_: str | None = None
     coil_volts: float | None = None
 
+    @property
+    def positive(self) -> bool:
+        """Whether the feed is the positive rail: it is, unless its label begins with a minus."""
+        return not (self.feed or "").strip().startswith(("-", "\u2212"))
+
 
 @dataclass(frozen=True)
 class SeparateContacts:

@@ -13,7 +13,7 @@ from itertools import pairwise
 
 from contactlogic.job.model import Fittings, Job
 
-__all__ = ["Fitted", "fitted", "is_positive", "polarity"]
+__all__ = ["Fitted", "fitted", "polarity"]
 
 _POLAR = ("diode", "zener")
 
@@ -35,17 +35,12 @@ class Fitted:
     returned: tuple[str, ...] = ()
 
 
-def is_positive(job: Job) -> bool:
-    """Whether the feed is the positive rail, as far as its label tells."""
-    return not (job.supply.feed or "").strip().startswith(("-", "\u2212"))
-
-
 def polarity(job: Job) -> str | None:
     """What to say of polarity where a fitting has one, None where none has."""
     parts = job.bench.fittings.values()
     if not any(part.hold is not None or part.suppression in _POLAR for part in parts):
         return None
-    side = "positive" if is_positive(job) else "negative"
+    side = "positive" if job.supply.positive else "negative"
     return f"polarity: direct current, the feed taken as the {side} rail"
 
 

@@ -7,9 +7,13 @@ from dataclasses import dataclass
 
 from contactlogic.design import Result
 from contactlogic.errors import RenderError
-from contactlogic.report.bench import Bought, bench_files, wire_list
+from contactlogic.purchase.cheapest import Cheapest
+from contactlogic.purchase.schedule import Schedule
+from contactlogic.report import purchase
+from contactlogic.report.bench import bench_files, bought_for, wire_list
 from contactlogic.report.facts import Facts
 from contactlogic.report.markdown import report
+from contactlogic.report.text import table_lines
 from contactlogic.report.wiring import schedule_csv
 from contactlogic.sequencer import SequencerResult
 
@@ -29,14 +33,16 @@ def papers(
     facts: Sequence[Facts],
     *,
     per_terminal: int = 2,
-    bought: Sequence[Bought] = (),
+    schedules: Sequence[Schedule] = (),
+    cheapest: Cheapest | None = None,
 ) -> Papers:
     """Every file of the output folder.
 
     Args:
         facts: of each design, in the order of `result.designs`.
         per_terminal: most conductors on a terminal, at least 2.
-        bought: what the parts bought for each design say of its contacts; empty if none are.
+        schedules: of each design with what is bought for it; empty if nothing is.
+        cheapest: how the designs were chosen by price, None if they were not.
 
     Where no renderer can be run the drawing's text takes the place of its pictures, and a note
     says so.
@@ -50,13 +56,13 @@ def papers(
             result.job,
             repeaters=result.repeaters,
             per_terminal=per_terminal,
-            bought=bought[index] if bought else None,
+            bought=bought_for(schedules[index]) if schedules else None,
         )
         for index, design in enumerate(result.designs)
     ]
     files = {
         "design.json": dumps(result).encode(),
-        "report.md": report(result, facts, lists).encode(),
+        "report.md": report(result, facts, lists, _purchase(schedules, cheapest)).encode(),
     }
     notes = []
     for index, design in enumerate(result.designs):
@@ -68,6 +74,7 @@ def papers(
             supply=result.job.supply,
             kinds={load.name: load.kind for load in result.job.loads},
             separate=result.job.limits.contacts,
+            fittings=result.job.bench.fittings,
         )
         try:
             pictures = render(text, ("svg", "png"))
@@ -78,6 +85,10 @@ def papers(
             files |= {f"{form}/drawing.{kind}": data for kind, data in pictures.items()}
         files |= {f"{form}/{name}": data for name, data in bench_files(lists[index]).items()}
         files[f"{form}/schedule.csv"] = schedule_csv(design, result.job).encode()
+        if schedules:
+            title = result.job.title
+            files[f"{form}/schedule.csv"] = purchase.schedule_csv(schedules[index], title).encode()
+            files[f"{form}/purchase.csv"] = purchase.purchase_csv(schedules[index], title).encode()
         if isinstance(result, SequencerResult):
             from contactlogic.report.sequencer import sequence_files
 
@@ -85,3 +96,17 @@ def papers(
             files |= more
             notes += said
     return Papers(files, tuple(notes))
+
+
+def _purchase(schedules: Sequence[Schedule], cheapest: Cheapest | None) -> list[str]:
+    """The report's section on what to buy, empty if nothing is bought."""
+    if not schedules:
+        return []
+    lines = ["## Purchase", ""]
+    if cheapest is not None:
+        lines += [*table_lines(purchase.OFFERED, purchase.offered(cheapest)), ""]
+    for schedule in schedules:
+        design = schedule.design
+        lines += [f"### {design.form.capitalize()} {design.fingerprint}: what to buy", ""]
+        lines += [*purchase.purchase_markdown(schedule), ""]
+    return lines

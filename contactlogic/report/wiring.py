@@ -16,7 +16,7 @@ from types import MappingProxyType
 from contactlogic.design import Design
 from contactlogic.job.model import Fittings, Job, Position
 from contactlogic.report.chain import joined
-from contactlogic.report.fittings import Fitted, fitted, is_positive
+from contactlogic.report.fittings import Fitted, fitted
 from contactlogic.report.text import csv_text, one_line
 from contactlogic.terminals import RETURN, load_marks, pole_marks, wire_numbers
 
@@ -88,7 +88,7 @@ def net_terminals(
         fed, returned = load_marks(kinds.get(load))
         coils = [load, *(r for r, of in repeaters.items() if of == load and of in network.relays)]
         parts = job.bench.fittings.get(load, Fittings())
-        more = Fitted() if net is None else fitted(load, parts, positive=is_positive(job))
+        more = Fitted() if net is None else fitted(load, parts, positive=job.supply.positive)
         if net is not None:
             own = [*more.fed, *(f"{coil}:{fed}" for coil in coils)]
             if more.supply:
