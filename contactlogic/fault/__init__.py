@@ -1,6 +1,14 @@
 """Single faults of a finished panel: what each does to every load, in every row."""
 
-from contactlogic.fault.kinds import Change, Fault, FaultKind, single_faults, swaps, variants
+from contactlogic.fault.kinds import (
+    Change,
+    Fault,
+    FaultKind,
+    joins_alike,
+    single_faults,
+    swaps,
+    variants,
+)
 from contactlogic.fault.panel import Panel, PanelContact, Wire, panel_of
 from contactlogic.fault.simulate import Outcome, Simulator
 from contactlogic.fault.study import (
@@ -24,6 +32,7 @@ __all__ = [
     "Simulator",
     "SneakCircuit",
     "Wire",
+    "joins_alike",
     "panel_of",
     "single_faults",
     "study_faults",

@@ -9,14 +9,23 @@ whatever the row.  A wire off splits its net.
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping
+from collections.abc import Callable, Iterable, Iterator, Mapping
 from dataclasses import dataclass, field
 from itertools import combinations
 from typing import Literal
 
 from contactlogic.fault.panel import Panel, PanelContact
 
-__all__ = ["Change", "Fault", "FaultKind", "Position", "single_faults", "swaps", "variants"]
+__all__ = [
+    "Change",
+    "Fault",
+    "FaultKind",
+    "Position",
+    "joins_alike",
+    "single_faults",
+    "swaps",
+    "variants",
+]
 
 FaultKind = Literal[
     "welded make", "welded break", "never makes", "never breaks", "coil dead", "wire off",
@@ -84,18 +93,8 @@ def single_faults(panel: Panel) -> Iterator[Fault]:
 
 def _return_terminals(panel: Panel) -> frozenset[str]:
     """Terminals on the return rail's net."""
-    near: dict[str, list[str]] = {}
-    for wire in panel.wires:
-        near.setdefault(wire.start, []).append(wire.end)
-        near.setdefault(wire.end, []).append(wire.start)
-    found = {panel.back}
-    waiting = [panel.back]
-    while waiting:
-        for other in near.get(waiting.pop(), ()):
-            if other not in found:
-                found.add(other)
-                waiting.append(other)
-    return frozenset(found)
+    net = _parts((wire.start, wire.end) for wire in panel.wires)
+    return frozenset(end for end, name in net.items() if name == net.get(panel.back))
 
 
 def swaps(panel: Panel) -> Iterator[Fault]:
@@ -109,6 +108,45 @@ def swaps(panel: Panel) -> Iterator[Fault]:
             # At the other end of `two` the same terminals would be joined.
             if mine not in (two.start, two.end) and stays not in (two.start, two.end):
                 yield Fault("wires swapped", wires=(one.number, two.number), ends=(mine, two.start))
+
+
+def joins_alike(panel: Panel) -> Callable[[Change], bool]:
+    """A test whether a change of wires joins just the terminals that were joined before."""
+    net = _parts((wire.start, wire.end) for wire in panel.wires)
+    wires: dict[str, list[int]] = {}
+    for k, wire in enumerate(panel.wires):
+        wires.setdefault(net[wire.start], []).append(k)
+
+    def alike(change: Change) -> bool:
+        if any(net[one] != net[two] for one, two in change.joined):
+            return False
+        for name in {net[panel.wires[k].start] for k in change.off}:
+            left = [panel.wires[k] for k in wires[name] if k not in change.off]
+            pairs = [(wire.start, wire.end) for wire in left]
+            pairs += [pair for pair in change.joined if net[pair[0]] == name]
+            parts = _parts(pairs)
+            terminals = {
+                end for k in wires[name] for end in (panel.wires[k].start, panel.wires[k].end)
+            }
+            if len({parts.get(end, end) for end in terminals}) > 1:
+                return False
+        return True
+
+    return alike
+
+
+def _parts(pairs: Iterable[tuple[str, str]]) -> dict[str, str]:
+    """A terminal that stands for all those joined to it, by terminal."""
+    above: dict[str, str] = {}
+
+    def top(terminal: str) -> str:
+        while (higher := above.setdefault(terminal, terminal)) != terminal:
+            terminal = higher
+        return terminal
+
+    for one, two in pairs:
+        above[top(one)] = top(two)
+    return {terminal: top(terminal) for terminal in list(above)}
 
 
 def variants(panel: Panel, fault: Fault) -> tuple[Change, ...]:

@@ -7,7 +7,7 @@ from dataclasses import dataclass, field
 
 from contactlogic.fault.kinds import Fault, single_faults, variants
 from contactlogic.fault.panel import Panel
-from contactlogic.fault.simulate import Simulator
+from contactlogic.fault.simulate import Outcome, Simulator
 from contactlogic.truth import Target
 
 __all__ = [
@@ -105,7 +105,12 @@ def study_faults(panel: Panel, targets: Mapping[str, Target]) -> FaultStudy:
         targets: what each load must do, over the panel's inputs; free cells cannot go wrong.
     """
     simulator = Simulator(panel)
-    effects = [_effect(simulator, panel, targets, fault) for fault in single_faults(panel)]
+    faults = [(fault, variants(panel, fault)) for fault in single_faults(panel)]
+    outcomes = iter(simulator.run_all([change for _, changes in faults for change in changes]))
+    effects = [
+        _effect(panel, targets, fault, [next(outcomes) for _ in changes])
+        for fault, changes in faults
+    ]
     effects.sort(key=_rank)
     return FaultStudy(
         panel.inputs,
@@ -123,14 +128,13 @@ def _rank(effect: FaultEffect) -> int:
 
 
 def _effect(
-    simulator: Simulator, panel: Panel, targets: Mapping[str, Target], fault: Fault
+    panel: Panel, targets: Mapping[str, Target], fault: Fault, outcomes: Sequence[Outcome]
 ) -> FaultEffect:
     turns_on: dict[str, int] = {}
     turns_off: dict[str, int] = {}
     in_series: dict[str, int] = {}
     short = 0
-    for change in variants(panel, fault):
-        outcome = simulator.run(change)
+    for outcome in outcomes:
         short |= outcome.short
         for load in panel.loads:
             target = targets[load]
