@@ -110,9 +110,19 @@ def wire(
         str | None,
         typer.Option(metavar="off|free", help="What loads do in rows that a .csv or .xlsx lacks."),
     ] = None,
+    parts: schedule.Parts = None,
+    cheapest: Annotated[
+        bool, typer.Option("--cheapest", help="Search for the least price, not the fewest poles.")
+    ] = False,
+    spares: schedule.Spares = 0,
+    have: schedule.Have = None,
+    buy: schedule.Buy = None,
+    coil_volts: schedule.CoilVolts = None,
+    no_parallel: schedule.NoParallel = False,
 ) -> None:
     """Wire the loads of JOB with as few changeover contacts as found, prove it and draw it."""
     from contactlogic.cli import wiring
+    from contactlogic.cli.buying import Asked
 
     request = wiring.Request(
         job=job,
@@ -129,12 +139,18 @@ def wire(
         poles_per_relay=poles_per_relay,
         repeaters=repeaters,
         per_terminal=per_terminal,
+        buying=Asked(
+            parts, spares, coil_volts, not no_parallel, tuple(have or ()), tuple(buy or ())
+        ),
+        cheapest=cheapest,
         loads=loads,
         unlisted=unlisted,
     )
     with guarded(keep=str(job), trace=verbose):
         if seconds is not None and effort is not None:
             raise JobFileError("--seconds and --effort exclude each other", hint="give one of them")
+        if cheapest and parts is None:
+            raise JobFileError("--cheapest needs prices", hint="name a parts list with --parts")
         result = wiring.run(request)
         if result.interrupted:
             raise typer.Exit(Status.STOPPED)

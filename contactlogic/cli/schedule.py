@@ -11,7 +11,31 @@ from contactlogic.cli.choices import Forms
 from contactlogic.cli.status import Status, guarded
 from contactlogic.errors import JobFileError
 
-__all__ = ["register"]
+__all__ = ["Buy", "CoilVolts", "Have", "NoParallel", "Parts", "Spares", "register"]
+
+
+Parts = Annotated[
+    Path | None,
+    typer.Option(metavar="PARTS", help="Parts list, .csv or .xlsx; without it nothing is bought."),
+]
+Spares = Annotated[
+    int,
+    typer.Option(min=0, max=1000, metavar="PERCENT", help="Spares of each part, rounded up."),
+]
+Have = Annotated[
+    list[str] | None,
+    typer.Option(metavar="RELAY[=FORM]", help="A relay that is there already: UP, or UP=2C."),
+]
+Buy = Annotated[
+    list[str] | None,
+    typer.Option(metavar="RELAY", help="Buy a relay that the job says is moved from outside."),
+]
+CoilVolts = Annotated[
+    float | None, typer.Option(min=0.001, metavar="V", help="Voltage of the coils.")
+]
+NoParallel = Annotated[
+    bool, typer.Option("--no-parallel", help="Buy one part for each relay, none in parallel.")
+]
 
 
 def register(app: typer.Typer) -> None:
@@ -34,32 +58,12 @@ def schedule(
             show_default=False,
         ),
     ] = None,
-    parts: Annotated[
-        Path | None,
-        typer.Option(
-            metavar="PARTS", help="Parts list, .csv or .xlsx; without it nothing is bought."
-        ),
-    ] = None,
-    spares: Annotated[
-        int,
-        typer.Option(min=0, max=1000, metavar="PERCENT", help="Spares of each part, rounded up."),
-    ] = 0,
-    have: Annotated[
-        list[str] | None,
-        typer.Option(
-            metavar="RELAY[=FORM]", help="A relay that is there already, such as UP or UP=2C."
-        ),
-    ] = None,
-    buy: Annotated[
-        list[str] | None,
-        typer.Option(metavar="RELAY", help="Buy a relay that the job says is moved from outside."),
-    ] = None,
-    coil_volts: Annotated[
-        float | None, typer.Option(min=0.001, metavar="V", help="Voltage of the coils.")
-    ] = None,
-    no_repeaters: Annotated[
-        bool, typer.Option("--no-repeaters", help="One part for each relay, none in parallel.")
-    ] = False,
+    parts: Parts = None,
+    spares: Spares = 0,
+    have: Have = None,
+    buy: Buy = None,
+    coil_volts: CoilVolts = None,
+    no_parallel: NoParallel = False,
     out: Annotated[
         Path | None, typer.Option(metavar="DIR", help="Folder for schedule.csv and purchase.csv.")
     ] = None,
@@ -87,6 +91,7 @@ def schedule(
 ) -> None:
     """Count the contacts of each relay, and find the cheapest parts for them."""
     from contactlogic.cli import scheduling
+    from contactlogic.cli.buying import Asked
 
     with guarded(keep=str(source)):
         if seconds is not None and effort is not None:
@@ -94,8 +99,8 @@ def schedule(
         request = scheduling.Request(
             source=source,
             job=job,
-            asked=scheduling.Asked(
-                parts, spares, coil_volts, not no_repeaters, tuple(have or ()), tuple(buy or ())
+            asked=Asked(
+                parts, spares, coil_volts, not no_parallel, tuple(have or ()), tuple(buy or ())
             ),
             out=out,
             force=force,

@@ -2,40 +2,30 @@
 
 from __future__ import annotations
 
-import re
 import sys
-from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from contactlogic.cli.jobs import Wirable, wirable_job
+from contactlogic.cli.buying import (
+    Asked,
+    drawer_of,
+    moved,
+    schedules_of,
+    schedules_of_result,
+)
+from contactlogic.cli.jobs import wirable_job
 from contactlogic.cli.wiring import screen_width, wired
-from contactlogic.design import Design, Result
-from contactlogic.errors import DesignFileError, JobFileError, PartsError, Place
-from contactlogic.job.model import Job, PatternJob
+from contactlogic.errors import DesignFileError, JobFileError, Place
+from contactlogic.job.model import Job
 
 if TYPE_CHECKING:
-    from contactlogic.purchase.parts import Contacts
-    from contactlogic.purchase.schedule import Drawer, Schedule
+    from contactlogic.purchase.schedule import Schedule
     from contactlogic.synthesis import Forms
 
-__all__ = ["Asked", "Request", "drawer_of", "run", "schedules_of_result"]
+__all__ = ["Request", "run"]
 
 _DESIGN = ".json"
-_SOLVER_SECONDS = 60.0  # for the purchase of one design
-
-
-@dataclass(frozen=True)
-class Asked:
-    """Options about the purchase, as typed."""
-
-    parts: Path | None = None
-    spares: int = 0
-    coil_volts: float | None = None
-    repeaters: bool = True
-    have: Sequence[str] = ()
-    buy: Sequence[str] = ()
 
 
 @dataclass(frozen=True)
@@ -44,7 +34,7 @@ class Request:
 
     source: Path
     job: Path | None = None
-    asked: Asked = Asked()
+    asked: Asked = field(default_factory=Asked)
     out: Path | None = None
     force: bool = False
     json: bool = False
@@ -115,14 +105,14 @@ def _of_design(request: Request) -> _Found:
         found = subject(wanted)  # proves the design against the job
         title, designs, repeaters = found.job.title, found.designs, found.repeaters
         job = found.job
-        outside, slow = _moved(wirable_job(request.job, request.loads, request.unlisted))
+        outside, slow = moved(wirable_job(request.job, request.loads, request.unlisted))
     designs = tuple(each for each in designs if request.form in ("both", each.form))
     if not designs:
         which = "" if request.form == "both" else f"{request.form} "
         what = f"the file holds no {which}design"
         raise DesignFileError(what, place=Place(file=str(request.source)))
     drawer = drawer_of(request.asked, job)
-    schedules = _schedules(designs, repeaters, drawer, job, outside, slow)
+    schedules = schedules_of(designs, repeaters, drawer, job, outside, slow)
     return _Found(title, request.source.read_bytes(), schedules)
 
 
@@ -144,81 +134,6 @@ def _of_job(request: Request) -> _Found:
         result = wired(job, search)
     schedules = schedules_of_result(job, result, request.asked)
     return _Found(result.job.title, dumps(result).encode(), schedules, result.interrupted)
-
-
-def schedules_of_result(job: Wirable, result: Result, asked: Asked) -> list[Schedule]:
-    """Schedules of designs just made.
-
-    Raises:
-        PartsError: the parts list cannot be used, or nothing can be bought for some relay.
-    """
-    outside, slow = _moved(job)
-    drawer = drawer_of(asked, result.job)
-    return _schedules(result.designs, result.repeaters, drawer, result.job, outside, slow)
-
-
-def _schedules(
-    designs: Sequence[Design],
-    repeaters: Mapping[str, str],
-    drawer: Drawer,
-    job: Job | None,
-    outside: Sequence[str],
-    slow: Sequence[str],
-) -> list[Schedule]:
-    from contactlogic.purchase.schedule import schedule_of
-
-    return [
-        schedule_of(design, drawer, job=job, repeaters=repeaters, outside=outside, slow=slow)
-        for design in designs
-    ]
-
-
-def _moved(job: Wirable) -> tuple[tuple[str, ...], tuple[str, ...]]:
-    """What is moved from outside, and what is slow to move."""
-    if isinstance(job, Job):
-        return (), ()
-    if isinstance(job, PatternJob):
-        from contactlogic.sequence.pattern import sequence_of
-
-        job, _ = sequence_of(job)
-    timing = job.table.timing
-    return tuple(job.table.inputs), (*timing.slow_release, *timing.slow_operate)
-
-
-def drawer_of(asked: Asked, job: Job | None) -> Drawer:
-    """The parts list and how to buy from it.
-
-    Raises:
-        InputError: the parts list or an option cannot be used.
-    """
-    from contactlogic.purchase.buy import Order
-    from contactlogic.purchase.needs import wanted_coil
-    from contactlogic.purchase.read_parts import read_parts
-    from contactlogic.purchase.schedule import Drawer
-
-    parts = None if asked.parts is None else read_parts(asked.parts)
-    coil, said = wanted_coil(job, asked.coil_volts)
-    order = Order(coil, said, asked.spares, asked.repeaters, _SOLVER_SECONDS)
-    return Drawer(parts, order, dict(map(_had, asked.have)), tuple(asked.buy))
-
-
-def _had(text: str) -> tuple[str, Contacts | None]:
-    """`UP` or `UP=2C`: a relay that is there already, with its contacts."""
-    from contactlogic.purchase.parts import Contacts
-
-    name, equals, form = text.partition("=")
-    if not equals:
-        return name.strip(), None
-    stated = re.findall("([0-9]{0,2})([ABCD])", form.upper())
-    if not stated or "".join(number + letter for number, letter in stated) != form.upper():
-        raise PartsError(
-            f"--have {text} is not clear",
-            expected="a relay such as UP, or a relay and its contacts such as UP=2C or UP=1A1B",
-        )
-    counts = dict.fromkeys("ABCD", 0)
-    for number, letter in stated:
-        counts[letter] += int(number or 1)
-    return name.strip(), Contacts(*counts.values())
 
 
 def _files(found: _Found) -> dict[str, bytes]:

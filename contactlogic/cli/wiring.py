@@ -10,6 +10,7 @@ from pathlib import Path
 from time import monotonic
 from typing import TYPE_CHECKING
 
+from contactlogic.cli.buying import Asked, priced, priced_text
 from contactlogic.cli.jobs import Wirable, wirable_job
 from contactlogic.design import Result
 from contactlogic.job.model import Job, PatternJob
@@ -42,6 +43,8 @@ class Request:
     poles_per_relay: int | None = None
     repeaters: bool = False
     per_terminal: int = 2
+    buying: Asked = field(default_factory=Asked)
+    cheapest: bool = False
     loads: str | None = None
     unlisted: str | None = None
     began: float = field(default_factory=monotonic)
@@ -72,7 +75,8 @@ def run(request: Request) -> Result:
             request.repeaters,
             watch,
         )
-        result = wired(job, search)
+        found = priced(job, search, wired, request.buying, cheapest=request.cheapest)
+        result = found.result
     if request.json:
         from contactlogic.report.designfile import dumps
 
@@ -88,8 +92,15 @@ def run(request: Request) -> Result:
     from contactlogic.report.summary import summary
 
     known = [facts(design, result.repeaters) for design in result.designs]
-    made = papers(result, known, per_terminal=request.per_terminal)
+    made = papers(
+        result,
+        known,
+        per_terminal=request.per_terminal,
+        schedules=found.schedules,
+        cheapest=found.cheapest,
+    )
     said = summary(result, known, width=screen_width(), verbose=request.verbose)
+    said += priced_text(found, width=screen_width())
     write_folder(folder, made.files, force=request.force)  # last, so that a fault leaves nothing
     if request.quiet:
         return result

@@ -377,7 +377,7 @@ def _why_not(
                 f"no single part{coil} holds the {_wanted(need)} of {need.relay}",
                 place=place,
                 expected="a part with as many contacts",
-                hint="allow several relays with their coils in parallel (repeaters)",
+                hint="allow several relays with their coils in parallel",
             )
     stock = "; ".join(f"{part.stock} of {part.name}" for part in offered if part.stock is not None)
     bare = Order(order.coil, order.said, 0, order.repeaters)

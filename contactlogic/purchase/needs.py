@@ -7,7 +7,7 @@ from collections.abc import Collection, Mapping
 from dataclasses import dataclass
 from decimal import Decimal
 
-from contactlogic.job.model import Job
+from contactlogic.job.model import AnyJob, Job
 from contactlogic.network import Network, Pole
 from contactlogic.purchase.currents import pole_currents
 from contactlogic.purchase.parts import SERVES, Coil, Contacts, FormLetter, Use, current_kind
@@ -96,7 +96,7 @@ def needs_of(
     return tuple(found)
 
 
-def wanted_coil(job: Job | None, stated: float | None = None) -> tuple[Coil | None, str]:
+def wanted_coil(job: AnyJob | None, stated: float | None = None) -> tuple[Coil | None, str]:
     """The coil voltage asked for, and where it is stated; None if nowhere.
 
     Args:

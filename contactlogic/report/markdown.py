@@ -36,12 +36,18 @@ from contactlogic.truth import MAX_INPUTS, rows_of, settings
 __all__ = ["report"]
 
 
-def report(result: Result, facts: Sequence[Facts], wires: Sequence[WireList] | None = None) -> str:
+def report(
+    result: Result,
+    facts: Sequence[Facts],
+    wires: Sequence[WireList] | None = None,
+    more: Sequence[str] = (),
+) -> str:
     """The whole report as Markdown text.
 
     Args:
         facts: of each design, in the order of `result.designs`.
         wires: of each design; made here with two conductors to a terminal if not given.
+        more: lines of further sections, before the cautions.
     """
     lists = wires or [wire_list(d, result.job, repeaters=result.repeaters) for d in result.designs]
     job = result.job
@@ -67,7 +73,7 @@ def report(result: Result, facts: Sequence[Facts], wires: Sequence[WireList] | N
     for index, (design, known) in enumerate(zip(result.designs, facts, strict=True)):
         lines += _design(design, result, known, lists[index])
         lines += [] if sequencer is None else report_section(sequencer, index)
-    lines += ["## Cautions", "", *(f"- {caution}" for caution in CAUTIONS)]
+    lines += [*more, "## Cautions", "", *(f"- {caution}" for caution in CAUTIONS)]
     return "\n".join(lines) + "\n"
 
 

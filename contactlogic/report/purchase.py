@@ -12,15 +12,19 @@ from collections.abc import Sequence
 from decimal import Decimal
 
 from contactlogic.purchase.buy import Purchase
+from contactlogic.purchase.cheapest import Cheapest, Offer
 from contactlogic.purchase.parts import Contacts, Part, plain
 from contactlogic.purchase.schedule import Line, Schedule
 from contactlogic.report.columns import fold, in_columns
 from contactlogic.report.phrases import NOT_GIVEN
-from contactlogic.report.text import csv_text, markdown, one_line
+from contactlogic.report.text import csv_text, markdown, one_line, table_lines
 
 __all__ = [
+    "OFFERED",
     "SCHEMA",
+    "cheapest_text",
     "money",
+    "offered",
     "purchase_csv",
     "purchase_json",
     "purchase_markdown",
@@ -30,6 +34,9 @@ __all__ = [
 ]
 
 SCHEMA = "contactlogic/purchase/1"
+
+OFFERED = ("form", "design", "poles", "busiest relay", "price", "known of the price")
+"""Headings of `offered`."""
 
 _FIGURES = ("poles", "makes", "breaks", "changeovers", "springs")
 
@@ -133,6 +140,37 @@ def _spare(spare: Contacts | None) -> str:
     return NOT_GIVEN if spare is None else spare.text or "none"
 
 
+def offered(found: Cheapest) -> list[tuple[str, ...]]:
+    """The design of fewest poles and the cheapest one of each form, side by side."""
+    rows = []
+    for k, fewest in enumerate(found.fewest):
+        best = Offer(found.result.designs[k], found.schedules[k])
+        rows.append(_offer("fewest poles found", fewest, found.at_least[k]))
+        rows.append(_offer("cheapest found", best, found.at_least[k]))
+    return rows
+
+
+def _offer(said: str, offer: Offer, at_least: Decimal) -> tuple[str, ...]:
+    counts = offer.design.network.per_relay()
+    busiest = max(counts, key=lambda name: counts[name].poles, default=None)
+    most = "none" if busiest is None else f"{busiest} ({counts[busiest].poles})"
+    price = "cannot be bought" if offer.price is None else money(offer.price)
+    known = f"at least {money(at_least)} for any wiring: proved"
+    if offer.price == at_least:
+        known = "proved least of all wirings"
+    return offer.design.form, said, str(len(offer.design.network.poles)), most, price, known
+
+
+def cheapest_text(found: Cheapest, *, width: int | None) -> str:
+    """The designs of fewest poles beside the cheapest, and why one cannot be bought."""
+    lines = in_columns(OFFERED, offered(found), width=width)
+    for offer in found.fewest:
+        if offer.price is None:
+            why = " ".join(offer.why_not.split())
+            lines.append(f"note: fewest poles as {offer.design.form}: {one_line(why)}")
+    return "\n".join(folded for line in lines for folded in fold(line, width)) + "\n"
+
+
 def purchase_markdown(schedule: Schedule) -> list[str]:
     """The purchase as a section of the report, without its heading; empty if nothing is asked."""
     purchase = schedule.purchase
@@ -148,25 +186,17 @@ def purchase_markdown(schedule: Schedule) -> list[str]:
         )
         for line in schedule.lines
     ]
-    lines = _table(("relay", "follows", "part", "form", "spare"), rows)
+    lines = table_lines(("relay", "follows", "part", "form", "spare"), rows)
     if purchase.items:
         items = [(markdown(part), *figures) for part, *figures in _items(purchase)]
         header = ("part", "used", "spares", "bought", "price of one", "price", "in stock")
-        lines += ["", *_table(header, items)]
+        lines += ["", *table_lines(header, items)]
     return [
         *lines,
         "",
         f"- {total_line(purchase)}",
         f"- coils: {markdown(_coil(purchase))}",
         *(f"- note: {markdown(note)}" for note in _notes(schedule)),
-    ]
-
-
-def _table(header: Sequence[str], rows: Sequence[Sequence[str]]) -> list[str]:
-    return [
-        "| " + " | ".join(header) + " |",
-        "|" + " --- |" * len(header),
-        *("| " + " | ".join(row) + " |" for row in rows),
     ]
 
 
