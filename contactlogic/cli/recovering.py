@@ -87,7 +87,7 @@ def run(request: Request) -> Outcome:
         )
     if request.form is not None and request.design is None:
         raise JobFileError("--form chooses among the designs of a file", hint="give --design")
-    expansion = None if table is None else resolve(table)
+    expansion = None if table is None else resolve(table, wired=isinstance(job, DrivesJob))
     judged: list[_Judged] = []
     cut = False
     with watching(not request.quiet) as watch:

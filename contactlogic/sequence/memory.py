@@ -33,8 +33,11 @@ _SECONDS = 20.0  # for making the memory's moves fewer; its number is settled be
 Orders = Mapping[tuple[int, int], tuple[int, ...]]
 
 
-def resolve(table: SequenceTable) -> Expansion:
+def resolve(table: SequenceTable, *, wired: bool = False) -> Expansion:
     """The expanded list with every ambiguity removed, and notes that say how.
+
+    Args:
+        wired: the drives are there already, so that no relay can be added.
 
     Raises:
         TableError: rows that cannot be used, or an ambiguity where memory is forbidden.
@@ -48,15 +51,17 @@ def resolve(table: SequenceTable) -> Expansion:
     unclear = ambiguities(expansion)
     if not unclear:
         return replace(expansion, notes=tuple(notes))
-    if table.memory == "forbidden":
-        raise _forbidden(table, expansion, unclear[0])
+    if wired or table.memory == "forbidden":
+        raise _forbidden(table, expansion, unclear[0], wired)
     added = add_memory(expansion)
     return replace(added, notes=(*notes, *added.notes))
 
 
-def _forbidden(table: SequenceTable, expansion: Expansion, unclear: Ambiguity) -> TableError:
+def _forbidden(
+    table: SequenceTable, expansion: Expansion, unclear: Ambiguity, wired: bool
+) -> TableError:
     places = [
-        f"{'after ' if expansion.steps[i].inserted else ''}row {expansion.steps[i].row}"
+        f"{'on the way from' if expansion.steps[i].inserted else 'in'} row {expansion.steps[i].row}"
         for i in unclear.steps
     ]
     values = " ".join(str(unclear.state >> i & 1) for i in range(len(expansion.columns)))
@@ -64,7 +69,9 @@ def _forbidden(table: SequenceTable, expansion: Expansion, unclear: Ambiguity) -
         f"the state {values} ({' '.join(expansion.columns)}) occurs {' and '.join(places)}, but "
         f"{unclear.why}; nothing tells the wiring which time it is",
         place=table.place(expansion.steps[unclear.steps[0]].row),
-        hint='allow memory = "allowed", or add a relay that differs between these rows',
+        hint="make the relay that remembers which time it is a column, with its drive"
+        if wired
+        else 'allow memory = "allowed", or add a relay that differs between these rows',
     )
 
 

@@ -148,7 +148,16 @@ def test_forbidden_memory_names_the_rows():
     sequence = table("A", "1|1 0|0 1|0 0|1", "X", memory="forbidden")
     with pytest.raises(TableError) as error:
         resolve(sequence)
-    assert "occurs row 1 and row 3" in str(error.value)
+    assert "occurs in row 1 and in row 3" in str(error.value)
+    assert 'memory = "allowed"' in str(error.value)
+
+
+def test_drives_that_are_wired_cannot_be_given_memory():
+    sequence = table("A", "1|1 0|0 1|0 0|1", "X")
+    with pytest.raises(TableError) as error:
+        resolve(sequence, wired=True)
+    assert "memory =" not in str(error.value)
+    assert "a column, with its drive" in str(error.value)
 
 
 @pytest.mark.parametrize(("times", "relays"), [(1, 0), (2, 2), (3, 3), (4, 3), (5, 4)])
