@@ -135,6 +135,11 @@ def best_networks(
     )
     networks: dict[Form, Network] = {}
     over: dict[Form, int] = {}
+    ladders = [
+        standing.best
+        for form, standing in zip(forms, progress.standings, strict=True)
+        if form == "ladder" and standing.best is not None
+    ]
     for form, errand, standing in zip(forms, errands, progress.standings, strict=True):
         mesh = standing.best
         if mesh is None:  # every walker was lost: what was known still stands
@@ -142,6 +147,8 @@ def best_networks(
                 (start for start in errand.starts if errand.goal.accepts(start)),
                 key=errand.goal.cost,
             )
+        # a ladder is a bridge as well, and its walkers may have come further
+        mesh = min((mesh, *ladders), key=errand.goal.cost) if form == "bridge" else mesh
         over[form] = errand.goal.over_budget(mesh)
         networks[form] = _named(_settled(mesh, task), task, loads)
     return Best(networks, over, progress.at_least, progress.feasible, progress)
