@@ -116,6 +116,7 @@ def _sections(found: Trace) -> Iterator[tuple[str, list[str]]]:
     series = [f"{load} in {_rows(rows, relays)}" for load, rows in found.in_series.items()]
     yield "loads that carry current in series with others (sneak circuit)", _some(series)
     yield "terminals wired to nothing", _some(found.circuit.unwired)
+    yield "fittings the wrong way round", _some(found.turned)
     yield "nets tied straight to a rail", _some(found.on_rails)
     yield "relays that do nothing", _some(found.idle_relays)
     yield "contacts that no current to a load can pass", _some(found.idle_contacts)
@@ -186,6 +187,7 @@ def trace_json(found: Trace) -> dict[str, Any]:
         ],
         "in_series": {load: list(rows_of(rows)) for load, rows in found.in_series.items()},
         "wired_to_nothing": list(circuit.unwired),
+        "wrong_way_round": list(found.turned),
         "tied_to_a_rail": list(found.on_rails),
         "idle_relays": list(found.idle_relays),
         "idle_contacts": list(found.idle_contacts),

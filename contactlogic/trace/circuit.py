@@ -57,6 +57,7 @@ class Circuit:
         net_of: number of each terminal's net, fuses and resistors taken as joined.
         contacts: makes and breaks with both ends wired.
         loads: in the order of the job, then by name.
+        fittings: terminals of parts at loads by the part's name (`LAMP/diode`) and their marks.
         unwired: terminals wired to nothing, one sentence each.
         understood: how hand-written names were taken, one sentence each.
     """
@@ -69,6 +70,7 @@ class Circuit:
     net_of: Mapping[str, int]
     contacts: tuple[TracedContact, ...]
     loads: tuple[TracedLoad, ...]
+    fittings: Mapping[str, Mapping[str, str]]
     unwired: tuple[str, ...]
     understood: tuple[str, ...]
 
@@ -100,7 +102,7 @@ def circuit_of(wires: Sequence[Wire], known: Known) -> Circuit:
         fed = fed or (bare[0] if bare[0] in marked else None)
         returned = returned or (bare[1] if bare[1] in marked else None)
         loads.append(TracedLoad(name, fed, returned, coil))
-    links = _links(found)
+    links = _links(_fittings(found))
     nets = _nets((*joined, *links), (feed, back))
     circuit = Circuit(
         relays,
@@ -111,6 +113,7 @@ def circuit_of(wires: Sequence[Wire], known: Known) -> Circuit:
         nets,
         contacts,
         tuple(loads),
+        _fittings(found),
         (),
         tuple(_understood(feed, back, wires, found, ends, known)),
     )
@@ -193,7 +196,7 @@ class _Sides:
         elif returned is not None or not self.returned:
             chosen = name
         elif other:
-            chosen = _other_end(name) if self._leads(other, self.back) else name
+            chosen = _other_end(name) if self._is_returned(other) else name
         else:
             partner = next(n for w, s, n in self.bare if w == at and s != side)
             if self.ends[partner][:2] != (None, None):
@@ -222,20 +225,27 @@ class _Sides:
 
     def _leads(self, terminal: str, rail: Sequence[str], without: str = "") -> bool:
         """Whether wires alone lead from a terminal to a rail, not by the end `without`."""
+        return any(end in rail for end in self._joined(terminal, without))
+
+    def _is_returned(self, terminal: str) -> bool:
+        """Whether a terminal is on the return rail, or on nothing but returned ends of loads."""
+        there = self._joined(terminal)
+        seconds = {ends[1] for ends in self.ends.values()} | {_other_end(n) for n in self.ends}
+        return any(end in self.back for end in there) or there <= seconds
+
+    def _joined(self, terminal: str, without: str = "") -> set[str]:
+        """Terminals that wires join to one, as far as their ends are settled."""
         near: dict[str, list[str]] = {}
         for a, b in self.pairs:
             near.setdefault(a, []).append(b)
             near.setdefault(b, []).append(a)
         waiting, seen = [terminal], {terminal, without, ""}
         while waiting:
-            here = waiting.pop()
-            if here in rail:
-                return True
-            for other in near.get(here, ()):
+            for other in near.get(waiting.pop(), ()):
                 if other not in seen:
                     seen.add(other)
                     waiting.append(other)
-        return False
+        return seen - {without, ""}
 
     def _between(self, name: str, partner: str) -> bool | None:
         """Whether a wire between two unmarked loads joins their returns, None if not clear yet."""
@@ -285,12 +295,18 @@ def _contacts(
     return tuple(contacts), unwired
 
 
-def _links(found: Mapping[str, Meaning]) -> tuple[tuple[str, str], ...]:
-    marks: dict[str, set[str]] = {}
+def _fittings(found: Mapping[str, Meaning]) -> dict[str, dict[str, str]]:
+    parts: dict[str, dict[str, str]] = {}
     for meaning in found.values():
-        if meaning.kind == "fitting" and meaning.name.rpartition("/")[2] in LINKS:
-            marks.setdefault(meaning.name, set()).add(meaning.terminal)
-    pairs = (sorted(ends, key=natural) for _, ends in sorted(marks.items()))
+        if meaning.kind == "fitting":
+            parts.setdefault(meaning.name, {})[meaning.mark] = meaning.terminal
+    return dict(sorted(parts.items()))
+
+
+def _links(parts: Mapping[str, Mapping[str, str]]) -> tuple[tuple[str, str], ...]:
+    """Both terminals of every fuse and resistor."""
+    passing = (ends for name, ends in parts.items() if name.rpartition("/")[2] in LINKS)
+    pairs = (sorted(ends.values(), key=natural) for ends in passing)
     return tuple((ends[0], ends[1]) for ends in pairs if len(ends) == 2)
 
 
@@ -340,11 +356,13 @@ def _understood(
     yield f"feed: {', '.join(feed)}" if feed else "no wire goes to the feed"
     if back:
         yield f"return: {', '.join(back)}"
+    as_loads = sorted(set(ends) - set(known.loads), key=natural)
     if not back or not any(returned for _, returned, _ in ends.values()):
         bare = any(m.kind == "load" and not m.mark for m in found.values())
         if not back or not bare:
             yield "the list does not say how loads are returned: each is taken as returned"
-    as_loads = sorted(set(ends) - set(known.loads), key=natural)
+            if as_loads and not back:
+                yield "if one of the names taken as loads is the return rail: --return NAME"
     if as_loads:
         kinds = (f"{name} (coil)" if ends[name][2] else name for name in as_loads)
         yield f"taken as loads: {', '.join(kinds)}"

@@ -96,6 +96,7 @@ class Trace:
         joined: loads joined when off.
         in_series: rows in which a load that is not on carries current through other loads.
         short: the rails joined, None if they never are.
+        turned: fittings wired the wrong way round, one sentence each.
         on_rails: nets tied straight to a rail, one sentence each.
         idle_relays: relays that no load depends on.
         idle_contacts: contacts on no way from the feed to a load.
@@ -112,6 +113,7 @@ class Trace:
     joined: tuple[Joined, ...]
     in_series: Mapping[str, int]
     short: Short | None
+    turned: tuple[str, ...]
     on_rails: tuple[str, ...]
     idle_relays: tuple[str, ...]
     idle_contacts: tuple[str, ...]
@@ -140,6 +142,7 @@ class Trace:
                 for load in self.loads
             )
             or self.missing
+            or (self.compared and self.turned)
         )
 
 
@@ -182,6 +185,7 @@ def trace(circuit: Circuit, job: Job | None, known: Known) -> Trace:
         joined=tuple(_joined(circuit, does, isolated)),
         in_series=does.in_series(),
         short=short,
+        turned=tuple(_turned(circuit, does, job is None or job.supply.positive)),
         on_rails=tuple(_on_rails(circuit, does)),
         idle_relays=tuple(_idle_relays(circuit, does, follows)),
         idle_contacts=tuple(_idle_contacts(circuit, does)),
@@ -269,6 +273,23 @@ def _switched_end(load: TracedLoad, circuit: Circuit, does: Behaviour) -> str | 
         if end is not None and circuit.net_of[end] not in (does.feed, does.back):
             return end
     return None
+
+
+def _turned(circuit: Circuit, does: Behaviour, positive: bool) -> Iterator[str]:
+    """Capacitors and diodes across a load whose positive end is on the negative side."""
+    loads = {load.name: load for load in circuit.loads}
+    for name, ends in circuit.fittings.items():
+        whose, _, part = name.rpartition("/")
+        load = loads.get(whose)
+        for plus, minus in (("+", "-"), ("K", "A")):
+            # the marks that belong at the return and at the feed
+            marks = (minus, plus) if positive else (plus, minus)
+            to_return, to_feed = (circuit.net_of.get(ends.get(mark, "")) for mark in marks)
+            fed = None if load is None or load.fed is None else circuit.net_of[load.fed]
+            if (fed is not None and to_return == fed) or (
+                does.back is not None and to_feed == does.back
+            ):
+                yield f"the {part} of {whose} is wired the wrong way round"
 
 
 def _on_rails(circuit: Circuit, does: Behaviour) -> Iterator[str]:

@@ -60,7 +60,11 @@ def find_rails(wires: Sequence[Wire], known: Known) -> Rails:
         # where the user names a rail, only that one counts on its side
         if k not in rails and meaning is not None and not (known.feed if meaning else known.back):
             rails[k] = meaning
-    _left_over(rails, spelt, places, wires)
+    for words, is_feed in ((_MORE_FEEDS, True), (_MORE_BACKS, False)):
+        if is_feed not in rails.values():  # words that may also name a load
+            rails |= dict.fromkeys((k for k in spelt if k in words - loads), is_feed)
+    if _PREFIX.rstrip(":") not in loads:  # else `rail:11` may be a contact of a relay so named
+        _left_over(rails, spelt, places, wires)
     if True not in rails.values() and not _only_returns(rails, spelt, wires):
         raise WiringError(
             "no rail of the list is known to be the feed",
@@ -85,7 +89,7 @@ def _usual(k: str, known: Known, loads: Collection[str]) -> bool | None:
             return False
     label = k.removeprefix(_PREFIX)
     behind = label != k
-    if not behind and k in loads:
+    if k in loads or (behind and _PREFIX.rstrip(":") in loads):
         return None
     if behind and known.rails:
         # the job names both: another rail is asked about unless its name leaves no doubt

@@ -47,6 +47,8 @@ ENGINES = (
     "lark",
     "matplotlib",
     "openpyxl",
+    "quantiphy",
+    "rkm_codes",
 )
 """Third-party engines; each is met in one module, so that it can be exchanged there."""
 

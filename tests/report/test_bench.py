@@ -129,6 +129,8 @@ def test_counts_fit_and_the_list_traces_back(tmp_path_factory, network, most, pl
     (folder / "plain.xlsx").write_bytes(wiring_xlsx(wire_list(design, plain)))
     again = trace(circuit_of(read_wires(folder / "plain.xlsx"), known), None, known)
     assert {x.name: x.table for x in found.loads} == {x.name: x.table for x in again.loads}
+    shorted = {load for load, net in network.loads.items() if net == network.supply}
+    assert not found.turned or shorted
 
 
 def test_each_terminal_is_counted_unwired_ones_too() -> None:

@@ -286,6 +286,26 @@ def test_loads_in_series_with_others_are_a_sneak_circuit(tmp_path: Path) -> None
     assert {load.name: load.table for load in found.loads} == {"X": 0, "Y": 0b1100}
 
 
+def test_fittings_the_wrong_way_round(tmp_path: Path) -> None:
+    wires = ("rail:+ - A:11", "A:14 - X:X1", "X:X2 - rail:-", "X:X1 - X/fuse:2", "A:14 - X/hold:+")
+    right = list_of(tmp_path, *wires, "X/hold:- - X:X2", "X/diode:K - X:X1", "X/diode:A - rail:-")
+    assert right.turned == ()
+    assert [load.table for load in right.loads] == [0b10]
+    turned = list_of(tmp_path, *wires, "X/hold:- - X:X2", "X/diode:A - X:X1", "X/diode:K - rail:-")
+    assert turned.turned == ("the diode of X is wired the wrong way round",)
+
+
+def test_a_relay_called_rail(tmp_path: Path) -> None:
+    job = Job("odd", ("RAIL",), (Load("X", Target(1, 0b10)),), 3, Supply("+24 V", "0 V"))
+    wires = ("rail:+24 V - RAIL:11", "rail:14 - X:X1", "X:X2 - rail:0 V")
+    assert list_of(tmp_path, *wires, job=job).agrees
+
+
+def test_bare_letters_of_mains(tmp_path: Path) -> None:
+    found = list_of(tmp_path, "L - A:11", "A:14 - LAMP", "LAMP - N")
+    assert [(load.name, load.table) for load in found.loads] == [("LAMP", 0b10)]
+
+
 def test_separate_makes_and_breaks(tmp_path: Path) -> None:
     found = list_of(
         tmp_path,
@@ -316,6 +336,29 @@ def test_hand_written_names(tmp_path: Path) -> None:
     )
     assert found.agrees
     assert [load.formula for load in found.loads] == ["UP + FLOOD", "UP' DOWN"]
+
+
+@pytest.mark.parametrize("seed", range(12))
+def test_loads_written_without_marks_in_any_order(tmp_path: Path, seed: int) -> None:
+    """Chains of returns and of feeds through unmarked loads, some of them marked at one end."""
+    draw = random.Random(seed)
+    wires = ["+ - A:11", "A:14 - P", "P - Q", "A:12 - R:X1", "0 V - R:X2", "R:X2 - Q", "Q - P"]
+    wires += ["P - S:X2", "S:X1 - A:14"]
+    wires.remove("Q - P")
+    wires.append("P:X2 - Q:X2" if seed % 2 else "Q - 0 V")
+    if seed % 2:
+        wires = [
+            w.replace("P - Q", "P:X1 - Q:X1").replace("A:14 - P", "A:14 - P:X1") for w in wires
+        ]
+        wires = [w.replace("P - S", "P:X2 - S").replace("R:X2 - Q", "R:X2 - Q:X2") for w in wires]
+    else:
+        wires.append("P - R:X2")
+    draw.shuffle(wires)
+    found = list_of(tmp_path, *wires)
+    assert {load.name: load.table for load in found.loads} == {
+        **dict.fromkeys("PQS", 0b10),
+        "R": 0b01,
+    }
 
 
 def test_rails_by_any_name(tmp_path: Path) -> None:
