@@ -13,7 +13,7 @@ from contactlogic.draw.grid import Grid, RungRow, lay_out
 from contactlogic.draw.panel import Lettering, Panel, SheetFacts
 from contactlogic.draw.rungs import rungs_of
 from contactlogic.draw.sheet import Line, Pen, Sheet
-from contactlogic.draw.table import draw_footer, draw_table, table_rows
+from contactlogic.draw.table import RELEASED, draw_footer, draw_table, table_rows
 from contactlogic.network import Network
 
 __all__ = ["SheetFacts", "arrange"]
@@ -47,7 +47,7 @@ def arrange(network: Network, facts: SheetFacts) -> Sheet:
     notes = (
         f"ladder {facts.fingerprint}",
         "1 pole" if poles == 1 else f"{poles} poles",
-        "drawn with all relays released",
+        RELEASED,
     )
     draw_footer(pen, facts.title, notes, left, right, y + 13)
     return pen.sheet(round(panels[-1].right, 2), round(y + 34, 2), facts.title)

@@ -29,7 +29,7 @@ from contactlogic.draw.bridge_symbols import (
 from contactlogic.draw.grid import Grid
 from contactlogic.draw.panel import Lettering, SheetFacts
 from contactlogic.draw.sheet import GREY, Line, Pen, Point, Sheet, Tag, text_width
-from contactlogic.draw.table import TableRow, draw_footer, draw_table
+from contactlogic.draw.table import RELEASED, TableRow, draw_footer, draw_table
 from contactlogic.draw.wires import Segment, connect
 from contactlogic.job.model import Fittings
 from contactlogic.network import Network, Pole
@@ -62,7 +62,7 @@ def arrange_bridge(network: Network, facts: SheetFacts) -> Sheet:
     notes = (
         f"bridge {facts.fingerprint}",
         "1 pole" if poles == 1 else f"{poles} poles",
-        "drawn with all relays released",
+        RELEASED,
     )
     draw_footer(pen, facts.title, notes, left, right, y + 13)
     return pen.sheet(round(frame.right, 2), round(y + 34, 2), facts.title)

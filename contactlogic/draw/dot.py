@@ -11,7 +11,7 @@ from collections.abc import Mapping, Sequence
 
 from contactlogic.draw.sheet import BLACK, Circle, Line, Point, Sheet, Text, plain
 
-__all__ = ["directed_text", "dot_text"]
+__all__ = ["directed_text", "dot_text", "number"]
 
 
 def dot_text(sheet: Sheet) -> str:
@@ -36,7 +36,7 @@ def dot_text(sheet: Sheet) -> str:
     ids: dict[Point, str] = {}
 
     def place(point: Point) -> str:
-        return f"{_number(point[0])},{_number(sheet.height - point[1])}"
+        return f"{number(point[0])},{number(sheet.height - point[1])}"
 
     def node(point: Point) -> str:
         at = (round(point[0], 2), round(point[1], 2))
@@ -102,7 +102,8 @@ def _plain_label(text: str) -> str:
     return "\\n".join(graphviz.escape(line) for line in lines)
 
 
-def _number(value: float) -> str:
+def number(value: float) -> str:
+    """A length as drawings write it: at most two decimals."""
     text = f"{value:.2f}".rstrip("0").rstrip(".")
     return "0" if text == "-0" else text
 
@@ -112,7 +113,7 @@ def _comment(title: str) -> str:
 
 
 def _line_style(line: Line) -> dict[str, str]:
-    style = {"class": line.kind, "penwidth": _number(line.weight)}
+    style = {"class": line.kind, "penwidth": number(line.weight)}
     if line.colour != BLACK:
         style["color"] = line.colour
     return style
@@ -134,7 +135,7 @@ def _text_style(text: Text) -> dict[str, str]:
         "shape": "plain",
         "style": "solid",
         "label": _plain_label(text.text),
-        "fontsize": _number(text.size),
+        "fontsize": number(text.size),
     }
     if text.bold:
         style["fontname"] = "Helvetica-Bold"

@@ -9,7 +9,10 @@ from contactlogic.draw.sheet import GREY, Pen, short_names, shorten, text_width,
 from contactlogic.network import Network, Pole
 from contactlogic.terminals import pole_marks
 
-__all__ = ["TableRow", "draw_footer", "draw_table", "table_rows"]
+__all__ = ["RELEASED", "TableRow", "draw_footer", "draw_table", "table_rows"]
+
+RELEASED = "drawn with all relays released"
+"""The last fact of every footer."""
 
 _SIZE = 9.0
 _PITCH = 13.0
