@@ -11,6 +11,7 @@ from contactlogic.job.model import Job
 from contactlogic.naming import did_you_mean, listed
 from contactlogic.network import Network, PoleCount
 from contactlogic.purchase.buy import Order, Purchase, buy
+from contactlogic.purchase.fittings import Bill, fittings_of
 from contactlogic.purchase.needs import Need, needs_of
 from contactlogic.purchase.parts import Contacts, Part, PartsList
 from contactlogic.purchase.places import as_bought
@@ -72,6 +73,7 @@ class Schedule:
         lines: in relay order.
         purchase: None without a parts list.
         notes: what could not be compared.
+        fittings: what the job states at loads and coils.
     """
 
     design: Design
@@ -80,6 +82,7 @@ class Schedule:
     lines: tuple[Line, ...]
     purchase: Purchase | None
     notes: tuple[str, ...]
+    fittings: tuple[Bill, ...] = ()
 
     def moved(self) -> Iterator[str]:
         """Where a pole sits on another contact than the design's papers say."""
@@ -154,7 +157,8 @@ def schedule_of(
             said = said or UNUSED
         lines.append(Line(relay, follows.get(relay), count, part, spare, said))
     notes = tuple(_notes(job, drawer.parts, needs))
-    return Schedule(design, network, follows, tuple(lines), purchase, notes)
+    fittings = () if job is None else fittings_of(job)
+    return Schedule(design, network, follows, tuple(lines), purchase, notes, fittings)
 
 
 def _notes(job: Job | None, parts: PartsList | None, needs: Collection[Need]) -> Iterator[str]:

@@ -15,6 +15,7 @@ from contactlogic.design import Design
 from contactlogic.job.model import Job
 from contactlogic.network import Network
 from contactlogic.purchase.currents import pole_currents
+from contactlogic.purchase.fittings import fittings_of
 from contactlogic.purchase.parts import plain
 from contactlogic.purchase.schedule import Schedule
 from contactlogic.report.chain import length_of
@@ -31,14 +32,12 @@ from contactlogic.report.wiring import (
 from contactlogic.workbook import Sheet, workbook_bytes
 
 __all__ = [
-    "Bill",
     "Bought",
     "Point",
     "WireList",
     "bench_files",
     "bought_for",
     "current_lines",
-    "fittings_rows",
     "points",
     "terminals_csv",
     "tick_list",
@@ -102,15 +101,6 @@ class Point:
     @property
     def terminal(self) -> str:
         return f"{self.owner}:{self.mark}"
-
-
-@dataclass(frozen=True)
-class Bill:
-    """One kind of fitting to be bought: what, its value, how many, and for which loads."""
-
-    part: str
-    value: str
-    loads: tuple[str, ...]
 
 
 def wire_list(
@@ -222,21 +212,6 @@ def terminals_csv(wires: WireList) -> str:
     )
 
 
-def fittings_rows(job: Job) -> tuple[Bill, ...]:
-    """Fuses, resistors, capacitors and suppression that the job states, alike ones together."""
-    wanted: dict[tuple[str, str], list[str]] = {}
-    for load, parts in job.bench.fittings.items():
-        for part, value in (
-            ("fuse", parts.fuse),
-            ("resistor", parts.series),
-            ("capacitor", parts.hold),
-            ("suppression", parts.suppression),
-        ):
-            if value is not None:
-                wanted.setdefault((part, value), []).append(load)
-    return tuple(Bill(part, value, tuple(loads)) for (part, value), loads in wanted.items())
-
-
 def current_lines(wires: WireList) -> list[str]:
     """Markdown: the largest current of each pole against its rating; nothing without currents."""
     job = wires.job
@@ -290,7 +265,7 @@ def tick_list(wires: WireList) -> str:
             for w in wires.conductors
         ],
     )
-    bill = fittings_rows(wires.job)
+    bill = fittings_of(wires.job)
     if bill:
         lines += ["", "## Parts at loads and coils", ""]
         lines += table_lines(
@@ -345,7 +320,7 @@ def wiring_xlsx(wires: WireList) -> bytes:
             (16, 24, 12, 6, 6, 6, 8, 40),
         ),
     ]
-    bill = fittings_rows(wires.job)
+    bill = fittings_of(wires.job)
     if bill:
         sheets.append(
             Sheet(

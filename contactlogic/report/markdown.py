@@ -92,7 +92,7 @@ def _asked(job: Job) -> list[str]:
         f"- supply, return: {markdown(not_given(job.supply.return_))}",
         f"- isolate: {job.limits.isolate}",
         f"- objective: {job.limits.objective}",
-        *(f"- at {markdown(load)}: {markdown(said)}" for load, said in _fitted(job)),
+        *(f"- fitted at {markdown(load)}: {markdown(said)}" for load, said in _fitted(job)),
         "",
     ]
     rows_of_loads = []

@@ -38,6 +38,8 @@ SCHEMA = "contactlogic/purchase/1"
 OFFERED = ("form", "design", "poles", "busiest relay", "price", "known of the price")
 """Headings of `offered`."""
 
+_AT_LOADS = ("at loads and coils", "number", "for")
+
 _FIGURES = ("poles", "makes", "breaks", "changeovers", "springs")
 
 
@@ -77,6 +79,8 @@ def _design(schedule: Schedule, title: str, width: int | None) -> list[str]:
     )
     if purchase is not None:
         lines += ["", *_purchase(purchase, width)]
+    if schedule.fittings:
+        lines += ["", *in_columns(_AT_LOADS, _fittings(schedule), width=width)]
     return [*lines, *(f"note: {one_line(note)}" for note in _notes(schedule))]
 
 
@@ -94,6 +98,11 @@ def _purchase(purchase: Purchase, width: int | None) -> list[str]:
         f"coils:  {_coil(purchase)}",
         f"spares: {purchase.spares} per cent of each part, rounded up",
     ]
+
+
+def _fittings(schedule: Schedule) -> list[tuple[str, ...]]:
+    """Parts at loads and coils: what, how many, where."""
+    return [(b.text, str(len(b.loads)), ", ".join(b.loads)) for b in schedule.fittings]
 
 
 def _items(purchase: Purchase) -> list[tuple[str, ...]]:
@@ -176,6 +185,7 @@ def purchase_markdown(schedule: Schedule) -> list[str]:
     purchase = schedule.purchase
     if purchase is None:
         return []
+    fittings = [tuple(map(markdown, row)) for row in _fittings(schedule)]
     rows = [
         (
             markdown(line.relay),
@@ -191,6 +201,8 @@ def purchase_markdown(schedule: Schedule) -> list[str]:
         items = [(markdown(part), *figures) for part, *figures in _items(purchase)]
         header = ("part", "used", "spares", "bought", "price of one", "price", "in stock")
         lines += ["", *table_lines(header, items)]
+    if fittings:
+        lines += ["", *table_lines(_AT_LOADS, fittings)]
     return [
         *lines,
         "",
@@ -220,7 +232,7 @@ def schedule_csv(schedule: Schedule, title: str) -> str:
 
 
 def purchase_csv(schedule: Schedule, title: str) -> str:
-    """One line for each part bought."""
+    """One line for each part bought, then for each kind at loads and coils, without a price."""
     name = _name(schedule, title)
     items = schedule.purchase.items if schedule.purchase else ()
     return csv_text(
@@ -228,7 +240,7 @@ def purchase_csv(schedule: Schedule, title: str) -> str:
             *("part", "form", "coil", "contact_amps", "used", "spares", "bought"),
             *("price_of_one", "price", "stock", "design"),
         ),
-        (
+        [
             (
                 one_line(item.part.name),
                 item.part.contacts.text,
@@ -240,7 +252,11 @@ def purchase_csv(schedule: Schedule, title: str) -> str:
                 name,
             )
             for item in items
-        ),
+        ]
+        + [
+            (b.text, "", "", "", len(b.loads), 0, len(b.loads), "", "", "", name)
+            for b in schedule.fittings
+        ],
     )
 
 
@@ -261,6 +277,10 @@ def purchase_json(schedules: Sequence[Schedule], title: str) -> str:
                 "repeaters": dict(schedule.repeaters),
                 "schedule": [_line_json(schedule, line) for line in schedule.lines],
                 "purchase": _purchase_json(schedule.purchase),
+                "fittings": [
+                    {"part": b.part, "value": b.value, "number": len(b.loads), "for": [*b.loads]}
+                    for b in schedule.fittings
+                ],
                 "notes": _notes(schedule),
             }
             for schedule in schedules

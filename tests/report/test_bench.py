@@ -5,6 +5,7 @@ from __future__ import annotations
 import csv
 import dataclasses
 import io
+import json
 from collections import Counter
 from decimal import Decimal
 from pathlib import Path
@@ -19,13 +20,13 @@ from strategies import networks
 from contactlogic.design import Bound, Design, Result
 from contactlogic.job.model import Bench, Fittings, Job, Load, Position, Supply
 from contactlogic.network import Network, Pole
+from contactlogic.purchase.fittings import fittings_of
 from contactlogic.purchase.parts import Contacts, Part, PartsList
 from contactlogic.purchase.schedule import Drawer, schedule_of
 from contactlogic.report.bench import (
     Bought,
     bench_files,
     bought_for,
-    fittings_rows,
     points,
     terminals_csv,
     tick_list,
@@ -33,6 +34,12 @@ from contactlogic.report.bench import (
     wiring_xlsx,
 )
 from contactlogic.report.markdown import report
+from contactlogic.report.purchase import (
+    purchase_csv,
+    purchase_json,
+    purchase_markdown,
+    purchase_text,
+)
 from contactlogic.report.wiring import conductors, rail_terminals
 from contactlogic.trace import Known, circuit_of, read_wires, trace
 from contactlogic.truth import Target, all_rows
@@ -84,11 +91,27 @@ def test_a_resistor_without_a_capacitor_is_in_series_with_the_coil() -> None:
     assert ends(job, 7) == ["HORN/series:2", "HORN:X1"]
 
 
+def test_fittings_stand_in_the_purchase() -> None:
+    part = Part("relay", Contacts(c=2), None, None, Decimal(3))
+    schedule = schedule_of(SLUICE_DESIGN, parts_of(part), job=FITTED)
+    rows = list(csv.DictReader(io.StringIO(purchase_csv(schedule, "Sluice house"))))
+    bought = {row["part"]: (row["bought"], row["price"]) for row in rows}
+    assert bought["relay"] == ("3", "9.00")
+    assert bought["fuse T 500 mA"] == ("1", "")
+    assert bought["capacitor 470 uF"] == ("1", "")
+    assert "resistor 100 ohm" in purchase_text([schedule], "Sluice house", width=None)
+    (data,) = json.loads(purchase_json([schedule], "Sluice house"))["designs"]
+    assert {"part": "suppression", "value": "diode", "number": 1, "for": ["HORN"]} in data[
+        "fittings"
+    ]
+    assert any("| varistor | 1 | LAMP |" in line for line in purchase_markdown(schedule))
+
+
 def test_what_is_to_be_bought_at_loads() -> None:
     job = dataclasses.replace(
         FITTED, bench=Bench({**FITTED.bench.fittings, "BELL": Fittings(fuse="1 A")})
     )
-    rows = [(b.part, b.value, b.loads) for b in fittings_rows(job)]
+    rows = [(b.part, b.value, b.loads) for b in fittings_of(job)]
     assert ("fuse", "1 A", ("HORN", "BELL")) in rows
     assert ("capacitor", "470 uF", ("HORN",)) in rows
 
@@ -212,8 +235,8 @@ def test_the_same_workbook_every_time() -> None:
 
 def test_the_report_names_fittings_where_there_are_some() -> None:
     fitted = report(dataclasses.replace(SLUICE_RESULT, job=FITTED), [_facts()])
-    assert "- at HORN: fuse 1 A, series 100 ohm, hold 470 uF, diode\n" in fitted
-    assert "- at " not in report(SLUICE_RESULT, [_facts()])
+    assert "- fitted at HORN: fuse 1 A, series 100 ohm, hold 470 uF, diode\n" in fitted
+    assert "- fitted at " not in report(SLUICE_RESULT, [_facts()])
 
 
 @pytest.mark.parametrize("per_terminal", [2, 3])
