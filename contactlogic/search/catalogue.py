@@ -102,8 +102,10 @@ def size(form: Form, mesh: Mesh) -> int:
 
 
 def order(form: Form, mesh: Mesh) -> tuple[int, ...]:
-    """What a form minimises, ties included."""
-    return (contacts_of(mesh), *cost(mesh)) if form == "contacts" else cost(mesh)
+    """What a form minimises, ties included; of ladders the fewest contacts come second."""
+    if form == "contacts":
+        return (contacts_of(mesh), *cost(mesh))
+    return (len(mesh.poles), contacts_of(mesh), *cost(mesh)) if form == "ladder" else cost(mesh)
 
 
 def _look_up(target: Target, form: Form) -> Entry | None:
