@@ -30,6 +30,7 @@ from contactlogic.truth import Target
 __all__ = [
     "MOST_RELAYS",
     "SequencerResult",
+    "as_sequencer",
     "as_table_job",
     "expanded",
     "table_job",
@@ -137,6 +138,28 @@ def wire_sequence(job: SequenceJob | PatternJob, search: Search) -> SequencerRes
             hint="contactlogic recover proves the recovery of larger sequencers",
         )
     result = _wired(table_job(job, expansion), table, expansion, search)
+    sequencer = _sequencer(result, table, expansion, notes)
+    for found in sequencer.recoveries:
+        if found.verdict != "recovers":
+            raise _not_self_starting(table, found, len(expansion.columns))
+    return sequencer
+
+
+def as_sequencer(result: Result, job: SequenceJob | PatternJob) -> SequencerResult:
+    """Designs that are wired already, with what is proved of them as sequencers.
+
+    Args:
+        result: designs of what the job wants row by row.
+        job: the sequence, or a pattern for which the relays are chosen.
+    """
+    job, notes = _listed(job)
+    return _sequencer(result, job.table, resolve(job.table), notes)
+
+
+def _sequencer(
+    result: Result, table: SequenceTable, expansion: Expansion, notes: tuple[str, ...]
+) -> SequencerResult:
+    """The result with recovery and transit of each design."""
     recoveries: list[Recovery] = []
     gaps: list[tuple[Transit, ...]] = []
     for number, design in enumerate(result.designs):
@@ -145,10 +168,9 @@ def wire_sequence(job: SequenceJob | PatternJob, search: Search) -> SequencerRes
             gaps.append(gaps[-1])
             continue
         network = folded(design.network, result.repeaters)
-        found = prove_network(network, table.timing, expansion, inputs_return=table.inputs_return)
-        if found.verdict != "recovers":
-            raise _not_self_starting(table, found, len(expansion.columns))
-        recoveries.append(found)
+        recoveries.append(
+            prove_network(network, table.timing, expansion, inputs_return=table.inputs_return)
+        )
         motion = network_motion(network, table.timing, expansion)
         gaps.append(transits(network, motion, [step.state for step in expansion.steps]))
     designs = tuple(_with_notes(design, table.timing) for design in result.designs)

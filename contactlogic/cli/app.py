@@ -10,6 +10,7 @@ from typing import Annotated
 import typer
 
 from contactlogic.cli import bench, schedule
+from contactlogic.cli import page as one_page
 from contactlogic.cli.choices import Form, Forms, Moves
 from contactlogic.cli.status import Status, guarded
 from contactlogic.errors import JobFileError
@@ -119,6 +120,9 @@ def wire(
     buy: schedule.Buy = None,
     coil_volts: schedule.CoilVolts = None,
     no_parallel: schedule.NoParallel = False,
+    page: Annotated[
+        bool, typer.Option("--page", help="Write report.html too, with drawings that move.")
+    ] = False,
 ) -> None:
     """Wire the loads of JOB with as few changeover contacts as found, prove it and draw it."""
     from contactlogic.cli import wiring
@@ -139,6 +143,7 @@ def wire(
         poles_per_relay=poles_per_relay,
         repeaters=repeaters,
         per_terminal=per_terminal,
+        page=page,
         buying=Asked(
             parts, spares, coil_volts, not no_parallel, tuple(have or ()), tuple(buy or ())
         ),
@@ -284,3 +289,4 @@ def trace(
 
 bench.register(app)
 schedule.register(app)
+one_page.register(app)

@@ -16,7 +16,7 @@ if TYPE_CHECKING:
     from contactlogic.hazard import Moves
     from contactlogic.report.designfile import DesignFile
 
-__all__ = ["Source", "Subject", "subject"]
+__all__ = ["Source", "Subject", "subject", "wanted_of"]
 
 _DESIGN = ".json"
 
@@ -82,7 +82,7 @@ def subject(source: Source) -> Subject:
             raise JobFileError("--loads and --unlisted go with a job that is a bare table")
         job, moves = _as_built(file, designs[0])
     else:
-        job, moves = _wanted(wirable_job(source.job, source.loads, source.unlisted))
+        job, moves = wanted_of(wirable_job(source.job, source.loads, source.unlisted))
     return _proved(job, moves, designs, file.repeaters, place)
 
 
@@ -94,11 +94,12 @@ def _wired(source: Source) -> Subject:
     wanted = wirable_job(source.path, source.loads, source.unlisted)
     with live(not source.quiet) as watch:
         result: Result = wired(wanted, Search(source.form or "both", watch=watch))
-    job, moves = _wanted(wanted)
+    job, moves = wanted_of(wanted)
     return Subject(job, result.designs, result.repeaters, moves)
 
 
-def _wanted(job: Wirable) -> tuple[Job, Moves]:
+def wanted_of(job: Wirable) -> tuple[Job, Moves]:
+    """What a job wants of its wiring, row by row, and the moves that it lists."""
     from contactlogic.hazard import listed_moves, step_moves
 
     if isinstance(job, Job):

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import shutil
 import sys
-from collections.abc import Iterable
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, field, replace
 from pathlib import Path
 from time import monotonic
@@ -43,6 +43,7 @@ class Request:
     poles_per_relay: int | None = None
     repeaters: bool = False
     per_terminal: int = 2
+    page: bool = False
     buying: Asked = field(default_factory=Asked)
     cheapest: bool = False
     loads: str | None = None
@@ -99,9 +100,12 @@ def run(request: Request) -> Result:
         schedules=found.schedules,
         cheapest=found.cheapest,
     )
+    files = dict(made.files)
+    if request.page:
+        files["report.html"] = _page(result, files)
     said = summary(result, known, width=screen_width(), verbose=request.verbose)
     said += priced_text(found, width=screen_width())
-    write_folder(folder, made.files, force=request.force)  # last, so that a fault leaves nothing
+    write_folder(folder, files, force=request.force)  # last, so that a fault leaves nothing
     if request.quiet:
         return result
     sys.stdout.write(said)
@@ -109,8 +113,17 @@ def run(request: Request) -> Result:
         print(f"note: {note}")
     if result.interrupted:
         print(_STOPPED)
-    print(f"written to {folder}: {', '.join(_tidy(made.files))}")
+    print(f"written to {folder}: {', '.join(_tidy(files))}")
     return result
+
+
+def _page(result: Result, files: Mapping[str, bytes]) -> bytes:
+    """The papers as one page."""
+    from contactlogic.page import page
+    from contactlogic.report.sequencer import pictures
+
+    shown = [pictures(files, design.form) for design in result.designs]
+    return page(result, files["report.md"].decode(), pictures=shown).encode()
 
 
 def searching(request: Request, now: float) -> float | None:

@@ -20,7 +20,7 @@ from contactlogic.errors import OutputError, Place
 __all__ = ["FORMS", "check_folder", "write_folder"]
 
 FORMS = ("ladder", "bridge")
-_TOP = ("design.json", "report.md")
+_TOP = ("design.json", "report.md", "report.html")
 _DRAWN = tuple(f"{name}.{kind}" for name in ("drawing", "states") for kind in ("svg", "png", "gv"))
 _PER_FORM = (
     *_DRAWN,

@@ -17,7 +17,7 @@ from contactlogic.report.text import table_lines
 from contactlogic.report.wiring import schedule_csv
 from contactlogic.sequencer import SequencerResult
 
-__all__ = ["Papers", "papers"]
+__all__ = ["Papers", "papers", "purchase_lines"]
 
 
 @dataclass(frozen=True)
@@ -62,7 +62,7 @@ def papers(
     ]
     files = {
         "design.json": dumps(result).encode(),
-        "report.md": report(result, facts, lists, _purchase(schedules, cheapest)).encode(),
+        "report.md": report(result, facts, lists, purchase_lines(schedules, cheapest)).encode(),
     }
     notes = []
     for index, design in enumerate(result.designs):
@@ -98,7 +98,7 @@ def papers(
     return Papers(files, tuple(notes))
 
 
-def _purchase(schedules: Sequence[Schedule], cheapest: Cheapest | None) -> list[str]:
+def purchase_lines(schedules: Sequence[Schedule], cheapest: Cheapest | None) -> list[str]:
     """The report's section on what to buy, empty if nothing is bought."""
     if not schedules:
         return []

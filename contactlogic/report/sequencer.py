@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import json
-from collections.abc import Iterator
+from collections.abc import Iterator, Mapping
 
 from contactlogic.design import Design
 from contactlogic.draw.render import render
@@ -16,7 +16,7 @@ from contactlogic.sequence.record import recovery_json
 from contactlogic.sequence.wants import ways
 from contactlogic.sequencer import SequencerResult
 
-__all__ = ["expansion_lines", "recovery_lines", "report_section", "sequence_files"]
+__all__ = ["expansion_lines", "pictures", "recovery_lines", "report_section", "sequence_files"]
 
 
 def expansion_lines(result: SequencerResult) -> Iterator[str]:
@@ -94,6 +94,13 @@ def sequence_files(result: SequencerResult, index: int) -> tuple[dict[str, bytes
         files[f"{form}/states.gv"] = text.encode()
         return files, [f"no picture of the states, states.gv was written instead: {error}"]
     return files | {f"{form}/states.{kind}": data for kind, data in drawn.items()}, []
+
+
+def pictures(files: Mapping[str, bytes], form: str) -> dict[str, bytes]:
+    """The pictures of a sequencer among the files of its design, as SVG by what they show."""
+    named = {"Chart of the sequence": "chart.svg", "States and moves": "states.svg"}
+    found = {name: files.get(f"{form}/{file}") for name, file in named.items()}
+    return {name: svg for name, svg in found.items() if svg is not None}
 
 
 def _graph(result: SequencerResult, design: Design, index: int) -> str:

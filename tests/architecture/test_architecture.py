@@ -27,6 +27,7 @@ LAYERS = (
     {"sequencer", "repair", "trace"},
     {"purchase"},
     {"draw", "report"},
+    {"page"},
     {"cli"},
     {"__main__"},
 )
@@ -44,7 +45,9 @@ ENGINES = (
     "pyeda",
     "dd",
     "graphviz",
+    "jinja2",
     "lark",
+    "markdown_it",
     "matplotlib",
     "openpyxl",
     "quantiphy",
