@@ -12,7 +12,7 @@ from contactlogic.truth import rows_of, settings
 
 __all__ = ["dumps", "row_json", "row_text", "trace_json", "trace_text"]
 
-_ROWS_SHOWN = 6  # truth tables of more relays are left to --json
+_RELAYS_SHOWN, _WIDEST = 6, 100  # larger truth tables are left to --json
 _SHOWN = 8  # findings of one kind that are shown before the rest are only counted
 
 
@@ -43,7 +43,8 @@ def _lines(found: Trace) -> Iterator[str]:
         proved = "" if load.proved else "  (not proved least)"
         yield f"{load.name:<{width}} = {load.formula}{proved}"
     yield ""
-    if 0 < len(relays) <= _ROWS_SHOWN and found.loads:
+    header = sum(len(name) + 1 for name in (*relays, *(load.name for load in found.loads)))
+    if 0 < len(relays) <= _RELAYS_SHOWN and found.loads and header <= _WIDEST:
         yield from _table(found)
         yield ""
     yield from _verdict(found)
