@@ -17,9 +17,6 @@ from contactlogic.child import ChildCrashed, ChildTimedOut, run
 from contactlogic.design import Bound, Design, Form, LoadStatus, Result
 from contactlogic.errors import ProofFailed
 from contactlogic.job.model import Job
-from contactlogic.ladder.build import build
-from contactlogic.ladder.candidates import candidate_trees
-from contactlogic.ladder.plan import plan_rungs
 from contactlogic.ladder.synthesise import LadderTask, best_ladder, plain_ladder
 from contactlogic.minimize import Cover, covers
 from contactlogic.network import Network
@@ -41,7 +38,6 @@ _CEILING = 600.0  # seconds for covers and ladder where only an effort is given
 _CONFLICTS = 2000  # of the proof, for each window of effort
 _COVER_SHARE = 0.3  # of the time goes to covers at most, shared out evenly over the loads
 _LADDER_SHARE = 0.4
-_TREES = 40  # of fewest contacts, looked at beside the catalogue's ladder
 _FEW_RELAYS = 5  # up to here a ladder takes a second or so
 
 
@@ -142,7 +138,7 @@ def synthesise(
         and (shelf := _from_catalogue(job, forms)) is not None
     ):
         designs = (
-            _proved(job, form, _taken(form, entry, job), {}, entry.at_least, statuses)
+            _proved(job, form, _named(entry, job), {}, entry.at_least, statuses)
             for form, entry in shelf.items()
         )
         return Result(job, tuple(designs), job.relays)
@@ -250,18 +246,8 @@ def _from_catalogue(job: Job, forms: Sequence[Form]) -> dict[Form, Entry] | None
     return found
 
 
-def _taken(form: Form, entry: Entry, job: Job) -> Network:
-    """The catalogue's network; of ladders one of fewest contacts where that has as few poles."""
-    name = job.loads[0].name
-    network = to_network(entry.mesh, job.relays, [name])
-    if form == "bridge":
-        return network
-    plain = (
-        build(plan_rungs([tree], share=False), job.relays, [name])
-        for tree in candidate_trees(job.loads[0].target, (), _TREES)
-    )
-    fewest = min(plain, key=Network.cost)
-    return fewest if len(fewest.poles) <= len(network.poles) else network
+def _named(entry: Entry, job: Job) -> Network:
+    return to_network(entry.mesh, job.relays, [job.loads[0].name])
 
 
 def _covers(job: Job, deadline: float, seed: int) -> dict[str, tuple[Cover, ...]]:

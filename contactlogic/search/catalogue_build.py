@@ -25,7 +25,10 @@ from pathlib import Path
 from time import monotonic
 
 from contactlogic.errors import ProofFailed
+from contactlogic.ladder.arrange import Rules, arrange
 from contactlogic.ladder.build import Edge, lay, pair
+from contactlogic.ladder.build import build as build_ladder
+from contactlogic.ladder.plan import plan_rungs
 from contactlogic.ladder.recognise import series_parallel
 from contactlogic.ladder.small import least_trees
 from contactlogic.ladder.synthesise import LadderTask, best_ladder
@@ -42,7 +45,7 @@ from contactlogic.search.catalogue import (
     to_lines,
 )
 from contactlogic.search.cheapest import Wish, cheapest
-from contactlogic.search.classes import RELAYS, classes
+from contactlogic.search.classes import FUNCTIONS, RELAYS, classes
 from contactlogic.search.encoding import Ends
 from contactlogic.search.goal import Goal
 from contactlogic.search.mesh import SUPPLY, Mesh, from_network, to_network
@@ -55,6 +58,7 @@ Found = dict[tuple[Form, int], Entry]
 _NAMES = tuple("ABCD")
 _SUPPLY, _LOAD = "L", "X"
 _PASSES = (20_000, 150_000)  # conflicts on one number of poles, for classes still open
+_TREES = 60  # of fewest contacts, looked at for one of as few poles
 _WINDOWS = 60  # tried for a class that is not proved in the first pass
 _SECONDS = 600.0  # an upper limit that the ladders of four relays never come near
 
@@ -273,7 +277,22 @@ def build(results: Path, workers: int, tell: Callable[[str], None]) -> Found:
         bridge, contacts = found["bridge", table], found["contacts", table]
         if order("bridge", contacts.mesh) < order("bridge", bridge.mesh):
             found["bridge", table] = replace(bridge, mesh=contacts.mesh)
+    for table in classes().leaders:
+        ladder = found["ladder", table]
+        for mesh in _fewest_contacts(table):
+            if order("ladder", mesh) < order("ladder", ladder.mesh):
+                ladder = found["ladder", table] = replace(ladder, mesh=mesh)
     return found
+
+
+def _fewest_contacts(table: int) -> Iterator[Mesh]:
+    """Ladders of the fewest contacts there are; most have the fewest poles as well."""
+    if table in (0, FUNCTIONS - 1):
+        return
+    for tree in least_trees(table, _TREES):
+        arranged = arrange(plan_rungs([tree], share=False), Rules())
+        if arranged is not None:
+            yield _numbered(from_network(build_ladder(arranged.plan, _NAMES, [_LOAD])))
 
 
 def distribution(found: Found) -> str:
