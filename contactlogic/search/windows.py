@@ -5,6 +5,10 @@ it touches into a few nodes; the SAT encoding of `encoding` is asked for fewer p
 wired differently, to wander) that restore what every load needs.  Rows that look alike from inside
 the window are one row, and rows are added only when an answer gets them wrong.
 
+Between windows the walk drifts: single poles are replaced by others that do as well, found by
+look-up (`swaps`), and pairs by one pole where that is possible.  That costs a hundredth of a window
+and leads it past networks that no small window leaves.
+
 Every network that `Walk` holds has been checked over all rows by bit-parallel conduction.
 """
 
@@ -19,6 +23,7 @@ from contactlogic.search.encoding import Ends, Row
 from contactlogic.search.goal import Goal
 from contactlogic.search.mesh import SUPPLY, Mesh, live_rows, trim
 from contactlogic.search.resynthesis import WindowProblem, resynthesise
+from contactlogic.search.swaps import stand_in
 
 __all__ = ["Found", "Walk", "wander"]
 
@@ -27,6 +32,9 @@ _PATIENCE = 12  # windows without gain, for each pole, before a walk starts afre
 _POLISH = 8  # windows for ties once the poles are known to be fewest
 _SIGN_OF_LIFE = 10  # windows between signs of life
 _DEARER = 0.25  # of the windows with as many poles are tried with one more where the price counts
+_DRIFT = 30  # poles replaced one by one before each window
+_DRIFT_JUDGED = 5  # the same where a judgement from outside is to be asked every time
+_PAIRS = 4  # pairs of poles looked at after each of them
 _TRIES = 6  # different answers looked at where a filter may reject them
 
 
@@ -46,10 +54,13 @@ class Walk:
         self.windows = 0
 
     def step(self) -> None:
-        """Try one window: first with a pole fewer, else as many, to wander.
+        """Drift, then try one window: first with a pole fewer, else as many, to wander.
 
         Where the price counts, one more pole is tried now and then: it may cost less.
         """
+        if len(self.here.poles) < 2:
+            return
+        self._drift()
         if len(self.here.poles) < 2:
             return
         size = self.random.choice((2, 3, 3, 4, 4, 4, 5))
@@ -62,8 +73,54 @@ class Walk:
             found = self._resynthesise(chosen, len(chosen) + more)
         if found is not None:
             self.here = found
-            if self.goal.cost(found) < self.goal.cost(self.best):
-                self.best = found
+            self._keep()
+
+    def _keep(self) -> None:
+        """Take note of the best; contacts that nothing needs are left out of it."""
+        goal = self.goal
+        more = len(self.here.poles) > len(self.best.poles) and goal.price is None
+        if more and goal.weight(self.here) >= goal.weight(self.best):
+            return
+        if goal.cost(bare := self._bare(self.here)) < goal.cost(self.best):
+            self.best = bare
+
+    def _bare(self, mesh: Mesh) -> Mesh:
+        weight = self.goal.weight(mesh)
+        for k, pole in enumerate(mesh.poles):
+            if None in (pole.make, pole.break_):
+                continue
+            for less in (pole._replace(make=None), pole._replace(break_=None)):
+                fewer = Mesh((*mesh.poles[:k], less, *mesh.poles[k + 1 :]), mesh.feeds)
+                if self.goal.accepts(fewer) and self.goal.weight(fewer) <= weight:
+                    mesh = fewer
+                    break
+        return trim(mesh)
+
+    def _drift(self) -> None:
+        goal = self.goal
+        judged = goal.penalty is not None or goal.price is not None
+        for _ in range(_DRIFT_JUDGED if judged else _DRIFT):
+            if len(self.here.poles) < 2:
+                break
+            if self._stand_in([self.random.randrange(len(self.here.poles))]):
+                for _ in range(_PAIRS):
+                    if len(self.here.poles) > 2:
+                        self._stand_in(self._choose(2))
+        self._keep()
+
+    def _stand_in(self, out: Sequence[int]) -> bool:
+        """Whether one pole, or none, could take the place of these."""
+        mesh, goal = self.here, self.goal
+        single = range(goal.n) if goal.singly else goal.separate.keys()
+        made = stand_in(mesh, out, goal.targets, self.random, single=single)
+        if made is None:
+            return False
+        rest = [pole for k, pole in enumerate(mesh.poles) if k not in out]
+        candidate = trim(Mesh((*rest, *made), mesh.feeds))
+        if not goal.accepts(candidate) or goal.weight(candidate) > goal.weight(mesh):
+            return False
+        self.here = candidate
+        return True
 
     def _choose(self, size: int) -> list[int]:
         """Indices of `size` poles that hang together by shared nets."""
