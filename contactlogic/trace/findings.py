@@ -158,6 +158,9 @@ def trace(circuit: Circuit, job: Job | None, known: Known) -> Trace:
         LimitError: more relays than rows can be worked out for.
     """
     follows, notes = _follows(circuit, known)
+    unused = [relay for relay in known.relays if relay not in _wired(circuit)]
+    if unused:
+        notes += (f"no wire goes to a contact of {', '.join(unused)}",)
     circuit = _without_repeaters(circuit, follows)
     does = Behaviour(circuit, follows)
     targets = {} if job is None else job.targets
@@ -321,7 +324,7 @@ def _on_rails(circuit: Circuit, does: Behaviour) -> Iterator[str]:
 
 def _idle_relays(circuit: Circuit, does: Behaviour, follows: Mapping[str, str]) -> Iterator[str]:
     """Relays with contacts in the list that change no load and never join the rails."""
-    used = {contact.relay for contact in circuit.contacts}
+    used = _wired(circuit)
     n = len(does.relays)
     tables = (*does.on.values(), does.shorts)
     for relay in circuit.relays:
@@ -330,6 +333,12 @@ def _idle_relays(circuit: Circuit, does: Behaviour, follows: Mapping[str, str]) 
         i = does.relays.index(follows.get(relay, relay))
         if not any(depends_on(table, n, i) for table in tables):
             yield relay
+
+
+def _wired(circuit: Circuit) -> set[str]:
+    """Relays that have a wire on one of their contacts."""
+    ends = (terminal.rpartition(":") for terminal in circuit.net_of)
+    return {owner for owner, _, mark in ends if owner in circuit.relays and mark.isdecimal()}
 
 
 def _idle_contacts(circuit: Circuit, does: Behaviour) -> Iterator[str]:

@@ -240,6 +240,7 @@ def test_terminals_wired_to_nothing(tmp_path: Path) -> None:
         *("rail:+ - A:11", "A:14 - X:X1", "X:X2 - rail:-", "B:14 - X:X1", "Y:X2 - X:X2"),
         "C:11 - A:11",
     )
+    assert found.idle_relays == ("B", "C")
     assert found.circuit.unwired == (
         "B:14 leads nowhere: no wire goes to B:11",
         "C:11 leads nowhere: no wire goes to C:12 or C:14",
@@ -271,7 +272,7 @@ def test_relays_that_do_nothing(tmp_path: Path) -> None:
         *("rail:+ - A:11", "A:14 - X:X1", "X:X2 - rail:-"),
         *("A:14 - B:11", "B:14 - C:11", "A:14 - D:11", "D:14 - X:X1"),
     )
-    assert found.idle_relays == ("B", "D")
+    assert found.idle_relays == ("B", "C", "D")
     assert found.idle_contacts == ("B:11-14", "D:11-14")
 
 
