@@ -30,6 +30,7 @@ __all__ = [
     "of_states",
     "swap",
     "swap_into",
+    "to_table",
     "variable_words",
     "view_of",
     "words_of",
@@ -84,6 +85,12 @@ def from_table(table: int, n: int) -> Words:
 
     raw = table.to_bytes(8 * words_of(n), "little")
     return np.frombuffer(raw, dtype="<u8").astype(np.uint64)
+
+
+def to_table(words: Words, n: int) -> int:
+    """A set as a truth table; the inverse of `from_table`."""
+    table = int.from_bytes(words.astype("<u8").tobytes(), "little")
+    return table & ((1 << (1 << n)) - 1)
 
 
 def variable_words(i: int, start: int, stop: int) -> Words:

@@ -11,7 +11,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import replace
-from itertools import combinations, permutations, product
+from itertools import combinations, islice, permutations, product
 
 from contactlogic.errors import InternalError, Place, TableError
 from contactlogic.job.sequence import SequenceTable, moves_to_make
@@ -26,7 +26,7 @@ from contactlogic.sequence.steps import (
 
 __all__ = ["add_memory", "resolve"]
 
-_ORDERS = 4000  # step orders tried
+_ORDERS = 1500  # step orders tried before whole sets of them
 _MOST = 6  # memory relays at most; more would tell more than 64 occurrences apart
 _SECONDS = 20.0  # for making the memory's moves fewer; its number is settled before
 
@@ -84,22 +84,43 @@ def _order_note(table: SequenceTable, link: tuple[int, int], order: tuple[int, .
 
 
 def _best_orders(table: SequenceTable, expansion: Expansion) -> Orders:
-    """Orders of moves with the least ambiguity left, changing as few transitions as possible."""
+    """Orders of moves with the least ambiguity left, changing as few transitions as possible.
+
+    Where many must change, all are first changed alike, then one after the other.
+    """
     choices = _choices(table, expansion)
     best: Orders = {}
     least = _unclear(expansion)
-    tried = 0
-    for number in range(1, len(choices) + 1):
-        for links in combinations(sorted(choices), number):
-            for picked in product(*(choices[link] for link in links)):
-                if tried >= _ORDERS or least == (0, 0):
-                    return best
-                tried += 1
-                orders = dict(zip(links, picked, strict=True))
-                found = _unclear(expand(table, orders))
+    for orders in _to_try(choices):
+        found = _unclear(expand(table, orders))
+        if found < least:
+            best, least = orders, found
+        if least == (0, 0):
+            return best
+    improved = True
+    while improved:
+        improved = False
+        for link in sorted(choices):
+            for order in choices[link]:
+                found = _unclear(expand(table, {**best, link: order}))
                 if found < least:
-                    best, least = orders, found
+                    best, least, improved = {**best, link: order}, found, True
+                if least == (0, 0):
+                    return best
     return best
+
+
+def _to_try(choices: Mapping[tuple[int, int], Sequence[tuple[int, ...]]]) -> Iterator[Orders]:
+    """Changes of few transitions, then of all in the same manner."""
+    few = (
+        dict(zip(links, picked, strict=True))
+        for number in range(1, len(choices) + 1)
+        for links in combinations(sorted(choices), number)
+        for picked in product(*(choices[link] for link in links))
+    )
+    yield from islice(few, _ORDERS)
+    for k in range(max(map(len, choices.values()), default=0)):
+        yield {link: orders[min(k, len(orders) - 1)] for link, orders in choices.items()}
 
 
 def _unclear(expansion: Expansion) -> tuple[int, int]:

@@ -8,8 +8,8 @@ and keeps to networks that recover, while the drives of states outside the seque
 
 from __future__ import annotations
 
-from collections.abc import Mapping
-from dataclasses import dataclass, replace
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass, field, replace
 
 from contactlogic.job.sequence import Timing
 from contactlogic.network import Network
@@ -22,6 +22,9 @@ __all__ = ["Blemishes", "Recovers", "homing", "shared_coils"]
 
 _STICKS = 100_000  # excess of a network that does not recover: no repeater takes it off
 _HUNTS = 50_000
+_REMEMBERED = 64  # networks
+
+_Known = dict[tuple[object, ...], int]
 
 
 def homing(expansion: Expansion, targets: Mapping[str, Target]) -> dict[str, Target]:
@@ -33,31 +36,29 @@ def homing(expansion: Expansion, targets: Mapping[str, Target]) -> dict[str, Tar
 
     States from which no move of a relay leads to the sequence (an input would have to move) hold.
     """
+    from contactlogic.sequence import bits
+
     n = len(expansion.columns)
     place = {name: i for i, name in enumerate(expansion.columns)}
-    relays = [place[name] for name in expansion.relays]
-    listed = {step.state for step in expansion.steps}
-    toward: dict[int, int] = {}  # state outside -> relay that moves
-    waiting = [step.state for step in expansion.steps]
-    while waiting:  # breadth first, so that every state takes a shortest way
-        following = []
-        for state in waiting:
-            for relay in relays:
-                other = state ^ (1 << relay)
-                if other not in listed and other not in toward:
-                    toward[other] = relay
-                    following.append(other)
-        waiting = following
+    inside = bits.of_states(n, (step.state for step in expansion.steps))
+    reached = frontier = inside
+    toward = {name: bits.empty(n) for name in expansion.relays}  # states in which it moves home
+    while frontier.any():  # breadth first, so that every state takes a shortest way
+        fresh = bits.empty(n)
+        for name, moving in toward.items():
+            new = bits.swap(frontier, place[name]) & ~reached
+            moving |= new
+            reached = reached | new
+            fresh |= new
+        frontier = fresh
+    outside = bits.full(n) & ~inside
+    listed = bits.to_table(inside, n)
     filled = dict(targets)
-    for name in expansion.relays:
-        relay = place[name]
-        on = 0
-        for state in range(1 << n):
-            if state not in listed and (state >> relay & 1) ^ (toward.get(state) == relay):
-                on |= 1 << state
+    for name, moving in toward.items():
+        position = bits.variable_words(place[name], 0, bits.words_of(n))
+        on = bits.to_table((position ^ moving) & outside, n)
         target = targets[name]
-        inside = sum(1 << state for state in listed)
-        filled[name] = replace(target, on=target.on | on, free=target.free & inside)
+        filled[name] = replace(target, on=target.on | on, free=target.free & listed)
     return filled
 
 
@@ -68,8 +69,12 @@ class Recovers:
     timing: Timing
     expansion: Expansion
     inputs_return: bool = True
+    _known: _Known = field(default_factory=dict, init=False, repr=False, compare=False)
 
     def __call__(self, network: Network) -> int:
+        return _recalled(self._known, network, self._weigh)
+
+    def _weigh(self, network: Network) -> int:
         found = prove_network(
             network, self.timing, self.expansion, inputs_return=self.inputs_return
         )
@@ -86,12 +91,26 @@ class Blemishes:
 
     timing: Timing
     expansion: Expansion
+    _known: _Known = field(default_factory=dict, init=False, repr=False, compare=False)
 
     def __call__(self, network: Network) -> int:
+        return _recalled(self._known, network, self._count)
+
+    def _count(self, network: Network) -> int:
         motion = network_motion(network, self.timing, self.expansion)
         states = [step.state for step in self.expansion.steps]
         shared = len(shared_coils(network, self.timing))
         return len(transits(network, motion, states)) + shared
+
+
+def _recalled(known: _Known, network: Network, judge: Callable[[Network], int]) -> int:
+    """A judgement, remembered: a search weighs its best network again beside every new one."""
+    key = (network.poles, tuple(network.loads.items()))
+    if key not in known:
+        if len(known) >= _REMEMBERED:
+            known.clear()
+        known[key] = judge(network)
+    return known[key]
 
 
 def shared_coils(network: Network, timing: Timing) -> tuple[str, ...]:

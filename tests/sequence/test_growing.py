@@ -7,6 +7,7 @@ from __future__ import annotations
 
 import random
 
+import networkx as nx
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
@@ -19,6 +20,7 @@ from contactlogic.sequence.growing import grow
 from contactlogic.sequence.memory import resolve
 from contactlogic.sequence.pattern import choose_relays
 from contactlogic.sequence.ring import ring_order, selecting_chain
+from contactlogic.sequence.selfstart import homing
 from contactlogic.sequence.steps import Expansion
 from contactlogic.sequence.wants import drive_targets
 
@@ -155,3 +157,18 @@ def test_a_selecting_chain_recovers_with_one_pole_more_than_relays(n):
 )
 def test_other_sequences_are_not_taken_for_such_a_ring(table):
     assert ring_order(resolve(table)) is None
+
+
+@pytest.mark.parametrize("table", [ring_table(4), twisted(4), started(4)], ids=["ring", "t", "s"])
+def test_homing_moves_one_relay_in_every_state_outside_and_one_step_nearer(table):
+    expansion = resolve(table)
+    n = len(expansion.columns)
+    relays = [expansion.columns.index(name) for name in expansion.relays]
+    listed = [step.state for step in expansion.steps]
+    cube = nx.Graph((s, s ^ 1 << i) for s in range(1 << n) for i in relays)
+    away = nx.multi_source_dijkstra_path_length(cube, set(listed))
+    filled = homing(expansion, drive_targets(expansion))
+    for state in set(range(1 << n)) - set(listed):
+        drives = {i: filled[expansion.columns[i]].on >> state & 1 for i in relays}
+        moves = [i for i in relays if drives[i] != state >> i & 1]
+        assert [away[state ^ 1 << i] for i in moves] == ([away[state] - 1] if state in away else [])

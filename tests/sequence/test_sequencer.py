@@ -6,6 +6,7 @@ wired or proved them.
 
 from __future__ import annotations
 
+import random
 from collections.abc import Iterator, Sequence
 
 import networkx
@@ -13,9 +14,10 @@ import pytest
 from oracles import closed_graph
 
 from contactlogic.errors import LimitError
-from contactlogic.job.model import PatternJob, SequenceJob
+from contactlogic.job.model import Limits, PatternJob, SequenceJob
 from contactlogic.job.sequence import Pattern, Row, SequenceTable, Timing
 from contactlogic.network import Network
+from contactlogic.sequence.pattern import choose_relays
 from contactlogic.sequencer import MOST_RELAYS, SequencerResult, wire_sequence
 from contactlogic.synthesis import Search
 
@@ -128,6 +130,105 @@ def test_two_relays_chasing_each_other_repeat_for_ever() -> None:
 
 def test_too_many_relays_are_refused_by_name_of_the_limit() -> None:
     names = tuple(f"K{k}" for k in range(MOST_RELAYS + 1))
-    rows = tuple(Row(tuple(int(k == at) for k in range(len(names)))) for at in range(len(names)))
+    rows = []
+    for k in range(len(names)):
+        rows += [
+            Row(tuple(int(k <= at <= k + more) for at in range(len(names)))) for more in (0, 1)
+        ]
+    rows[-1] = Row((1, *(0 for _ in names[2:]), 1))
     with pytest.raises(LimitError, match=f"{MOST_RELAYS + 1} relays and inputs"):
-        wire_sequence(SequenceJob("long", SequenceTable(names, (), rows)), Search(effort=0))
+        wire_sequence(SequenceJob("long", SequenceTable(names, (), tuple(rows))), Search(effort=0))
+
+
+def steps_home(
+    network: Network,
+    timing: Timing,
+    cycle: set[tuple[int, ...]],
+    inputs: Sequence[str],
+    dice: random.Random,
+) -> None:
+    """Some runs, each from a state and with moves drawn at random, come into the cycle."""
+    n = len(network.relays)
+    for _ in range(6):
+        state = tuple(dice.getrandbits(1) for _ in range(n))
+        for _ in range(60 * n):
+            if state in cycle:
+                break
+            state = dice.choice(list(moves(network, timing, state, inputs)))
+        assert state in cycle
+
+
+def wire_pattern(step: str, count: int, search: Search) -> SequencerResult:
+    """A pattern of one load, on in every third step and in the last, wired and run."""
+    rows = tuple((int(k % 3 == 1 or k == count - 1),) for k in range(count))
+    pattern = Pattern(("LAMP",), rows, step)  # type: ignore[arg-type]
+    result = wire_sequence(PatternJob("pattern", pattern), search)
+    network, expansion = result.designs[0].network, result.expansion
+    n = len(network.relays)
+    shown = []
+    for each in expansion.steps:
+        state = tuple(each.state >> k & 1 for k in range(n))
+        if each.loads[0] is not None:
+            assert fed(network, "LAMP", state) == bool(each.loads[0])
+        if not each.inserted:
+            shown.append(each.loads[0])
+        if not expansion.waits(each):
+            after = {tuple(value ^ (k in each.movers) for k, value in enumerate(state))}
+            assert set(moves(network, result.timing, state, expansion.inputs)) == after
+    wanted = [row[0] for row in rows]
+    assert shown[:: 2 if step == "pulse" else 1][:count] == wanted
+    if count % 2 and step == "slow":
+        assert any("extra state" in note for note in result.notes)
+    cycle = {tuple(each.state >> k & 1 for k in range(n)) for each in expansion.steps}
+    if n <= 6:
+        comes_home(result, 0, cycle)
+    steps_home(network, result.timing, cycle, expansion.inputs, random.Random(count))
+    assert result.recoveries[0].verdict == "recovers"
+    return result
+
+
+@pytest.mark.parametrize(
+    ("step", "count"),
+    [("slow", 5), ("ring", 2), ("ring", 13), ("pulse", 5)],
+)
+def test_patterns_of_many_lengths(step: str, count: int) -> None:
+    wire_pattern(step, count, Search("ladder", effort=0))
+
+
+@pytest.mark.slow
+@pytest.mark.parametrize("count", range(2, 25))
+@pytest.mark.parametrize("step", ["slow", "ring", "pulse"])
+def test_patterns_of_every_length(step: str, count: int) -> None:
+    result = wire_pattern(step, count, Search("ladder", effort=0))
+    if step == "ring" and count > 2:  # the chain, and a rung of the lamp's own
+        assert len(result.designs[0].network.poles) <= 2 * count + 1
+
+
+def test_stages_of_more_relays_than_are_searched() -> None:
+    names = tuple(f"K{k}" for k in range(12))
+    rows = []
+    for k in range(12):
+        rows.append(Row(tuple(int(i in (k, (k + 1) % 12)) for i in range(12)), (k % 2,)))
+        rows.append(Row(tuple(int(i == (k + 1) % 12) for i in range(12)), (k % 2,)))
+    job = SequenceJob("stages", SequenceTable(names, ("Z",), tuple(rows)))
+    result = wire_sequence(job, Search("both", effort=0))
+    assert [design.form for design in result.designs] == ["ladder", "bridge"]
+    network = result.designs[0].network
+    cycle = {tuple(s.state >> k & 1 for k in range(12)) for s in result.expansion.steps}
+    steps_home(network, result.timing, cycle, (), random.Random(12))
+    assert result.designs[0].verified_rows == 1 << 12
+    assert result.designs[0].bound.at_least == 12
+
+
+def test_budgets_hold_for_many_relays_too() -> None:
+    pattern = Pattern(("LAMP",), tuple((k % 2,) for k in range(11)), "ring")
+    names = choose_relays(pattern).table.columns
+    tight = Limits(poles=dict.fromkeys(names, 1))
+    with pytest.raises(LimitError, match="may use 1 pole"):
+        wire_sequence(PatternJob("ring", pattern, limits=tight), Search("ladder", effort=0))
+    search = Search("ladder", effort=0, repeaters=True)
+    result = wire_sequence(PatternJob("ring", pattern, limits=tight), search)
+    use = result.designs[0].network.per_relay()
+    assert result.repeaters
+    assert all(use[name].poles <= 1 for name in (*names, *result.repeaters))
+    assert result.recoveries[0].verdict == "recovers"

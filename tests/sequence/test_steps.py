@@ -282,3 +282,14 @@ def test_a_pattern_job_keeps_what_it_states():
         "lights.toml, [limits]: there is no relay K9 among those chosen for the pattern\n"
         "  expected: one of A, B, C"
     )
+
+
+def test_many_transitions_are_turned_round_alike():
+    # one relay hands on to the next: released first, each passes the state with none operated
+    n = 14
+    rows = [" ".join(str(int(i == k)) for i in range(n)) for k in range(n)]
+    names = " ".join(f"K{k}" for k in range(n))
+    done = resolve(table(names, " ".join(row.replace(" ", "") for row in rows)))
+    assert done.memory == ()
+    assert len(done.steps) == 2 * n
+    assert sorted(step.state.bit_count() for step in done.steps) == [1] * n + [2] * n
