@@ -115,7 +115,29 @@ class _Reader:
                 )
             self._check_slip(k, base, self.known.relays)
             strange[key(base)] = min(base, strange.get(key(base), base))
+        for base in self._without_colons():
+            strange.setdefault(key(base), base)
         self.relays = Lookup((*self.known.relays, *sorted(strange.values(), key=natural)))
+
+    def _without_colons(self) -> list[str]:
+        """Names that relays must have in terminals such as `K1.11`: those with a whole contact."""
+        marks: dict[str, set[str]] = {}
+        spelt: dict[str, str] = {}
+        for k in self.order:
+            found = _DIVIDED.fullmatch(self.spelt[k])
+            if k in self.rails or ":" in self.spelt[k] or found is None:
+                continue
+            whole = self.relays.find(self.spelt[k]) or self.loads.find(self.spelt[k])
+            if whole is None and _CONTACT.fullmatch(found[2]) and not self.loads.find(found[1]):
+                name = key(found[1])
+                spelt[name] = min(found[1], spelt.get(name, found[1]))
+                marks.setdefault(name, set()).add(found[2])
+        pairs = (("1", "2"), ("1", "4"), ("3", "4"))
+        return [
+            spelt[name]
+            for name, there in marks.items()
+            if any({mark[:-1] + a, mark[:-1] + b} <= there for mark in there for a, b in pairs)
+        ]
 
     def _find_loads(self) -> None:
         """Add the loads that the list alone knows."""

@@ -339,6 +339,16 @@ def test_hand_written_names(tmp_path: Path) -> None:
     assert [load.formula for load in found.loads] == ["UP + FLOOD", "UP' DOWN"]
 
 
+@pytest.mark.parametrize("mark", [".", " ", "-", "/"])
+def test_contacts_written_without_colons(tmp_path: Path, mark: str) -> None:
+    wires = ("+ - K1:11", "K1:14 - K2:11", "K2:12 - LAMP 2", "LAMP 2 - 0 V", "LAMP 12 - 0 V")
+    written = [w.replace(":", mark) for w in wires]
+    rows = "".join(",".join(w.rsplit(" - ", 1)) + "\n" for w in [*written, f"K1{mark}14 - LAMP 12"])
+    found = traced(tmp_path / "list.csv", "from,to\n" + rows)
+    assert found.relays == ("K1", "K2")
+    assert {load.name: load.table for load in found.loads} == {"LAMP 2": 0b0010, "LAMP 12": 0b1010}
+
+
 @pytest.mark.parametrize("seed", range(12))
 def test_loads_written_without_marks_in_any_order(tmp_path: Path, seed: int) -> None:
     """Chains of returns and of feeds through unmarked loads, some of them marked at one end."""
