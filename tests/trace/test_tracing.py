@@ -17,6 +17,7 @@ from contactlogic.errors import InputError, WiringError
 from contactlogic.job.model import Job, Limits, Load, SequenceJob, Supply
 from contactlogic.job.sequence import Row, SequenceTable, Timing
 from contactlogic.network import Network
+from contactlogic.report.tracing import trace_json
 from contactlogic.report.wiring import rail_terminals, wiring_csv
 from contactlogic.sequencer import wire_sequence
 from contactlogic.synthesis import Search
@@ -456,3 +457,15 @@ def test_workbooks_are_read_and_their_other_columns_passed_over(tmp_path: Path) 
     book.save(tmp_path / "list.xlsx")
     with pytest.raises(WiringError, match="formula"):
         read_wires(tmp_path / "list.xlsx")
+
+
+@given(networks(relays=3, poles=6, nets=5, loads=3), st.integers(0, 99), st.integers(0, 99))
+@settings(max_examples=30)
+def test_the_order_of_the_list_does_not_matter(tmp_path_factory, network, one, two):
+    folder = tmp_path_factory.mktemp("list")
+    job = as_job(network, Supply())
+    text = wiring_csv(Design("bridge", network, Bound(0, False), 0), job)
+    assume("rail:SUPPLY" in text)
+    first = traced(folder / "one.csv", shuffled(text, one).lower())
+    second = traced(folder / "two.csv", shuffled(text, two).lower())
+    assert trace_json(first) == trace_json(second)
