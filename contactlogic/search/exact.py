@@ -154,7 +154,7 @@ def _news(
             if not whole.advance(part):
                 break
         budget.spent += part.spent
-        if budget.grant(1) <= 0:
+        if whole.state != "open" or budget.grant(1) <= 0:
             break
         share *= 4
         if smaller is None and problem.n > 1:
