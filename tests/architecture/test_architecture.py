@@ -41,6 +41,7 @@ ENGINES = (
     "biodivine_aeon",
     "pysat",
     "ortools.linear_solver",
+    "ortools.constraint_solver",  # its routing
     "ortools.math_opt",  # the modelling layer over several solvers
     "pyeda",
     "dd",
