@@ -39,11 +39,12 @@ def live_model(
 ) -> dict[str, Any]:
     """A design for the script.
 
-    Keys: `relays` (name, the relay whose position it takes, its coil among the loads or null),
-    `columns` (relays in the order of the bits of a row), `nets` (how many), `supply`, `poles`
-    (relay, common, make or null, break or null), `loads` (name, net or null, what is wanted of it
-    in each row as `1`, `0` or `-`, null where there are too many rows), `steps` (position of each
-    column, what it is, what moves next, which steps follow).
+    Keys: `relays` (name, the relay whose position it takes, its coil among the loads or null,
+    whether it is slow to operate and to release), `columns` (relays in the order of the bits of a
+    row), `nets` (how many), `supply`, `poles` (relay, common, make or null, break or null), `loads`
+    (name, net or null, what is wanted of it in each row as `1`, `0` or `-`, null where there are
+    too many rows), `steps` (position of each column, row, what it is, what moves next, which steps
+    follow).
     """
     network = design.network
     number = numbers_of(design)
@@ -56,6 +57,9 @@ def live_model(
                 "name": relay,
                 "follows": relays[repeaters.get(relay, relay)],
                 "coil": loads.get(relay) if relay in coils else None,
+                "slow": [expansion.timing.slow(relay, at) for at in (False, True)]
+                if expansion is not None
+                else [False, False],
             }
             for relay in network.relays
         ],

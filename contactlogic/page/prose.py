@@ -80,7 +80,9 @@ def _written(tokens: Sequence[Token], down: int) -> str:
         if token.type == "table_open":
             flush()
             long = _rows(tokens, i) > _LONG
-            pieces.append(f'<div class="table{" long" if long else ""}">')
+            pieces.append(
+                '<div class="table long" tabindex="0">' if long else '<div class="table">'
+            )
         waiting.append(token)
         if token.type == "table_close":
             flush()

@@ -68,7 +68,8 @@ _READ = """root => ({
     line => parseFloat(getComputedStyle(line).strokeWidth) < 2).map(
     line => Number(line.dataset.net)))].sort((a, b) => a - b),
   blades: [...root.querySelectorAll("svg .blade")].map(
-    blade => [Number(blade.dataset.relay), `${blade.getAttribute("x2")},${blade.getAttribute("y2")}`,
+    blade => [Number(blade.dataset.relay),
+              `${blade.getAttribute("x2")},${blade.getAttribute("y2")}`,
               blade.dataset.released, blade.dataset.operated]),
   pressed: Object.fromEntries([...root.querySelectorAll("button.relay")].map(
     button => [button.querySelector(".name").textContent, button.getAttribute("aria-pressed")])),

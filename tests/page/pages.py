@@ -75,3 +75,33 @@ def crowded(poles: int = 25, relays: int = 6, nets: int = 14, seed: int = 4) -> 
 def text_of(result: Result) -> str:
     """The report that goes on a page."""
     return report(result, [facts(design, result.repeaters) for design in result.designs])
+
+
+# Four relays that release slowly, in a ring; found by a search and proved to start itself.
+RING_JOB = """
+title = "Ring"
+[sequence]
+columns = "NORTH EAST SOUTH WEST | BELL"
+rows = \"\"\"
+1 1 0 0 | 0
+0 1 1 0 | 1
+0 0 1 1 | 0
+1 0 0 1 | 1
+\"\"\"
+repeat = true
+[timing]
+slow_release = "NORTH EAST SOUTH WEST"
+"""
+
+RING = Network(
+    ("NORTH", "EAST", "SOUTH", "WEST"),
+    "L",
+    {"NORTH": "n8", "EAST": "n9", "SOUTH": "n5", "WEST": "n6", "BELL": "n3"},
+    (
+        Pole("NORTH", 1, "L", "n1", "n2"),
+        Pole("EAST", 1, "n3", "n4", "n1"),
+        Pole("EAST", 2, "n2", "n5", "n6"),
+        Pole("SOUTH", 1, "L", "n4", "n7"),
+        Pole("WEST", 1, "n7", "n8", "n9"),
+    ),
+)

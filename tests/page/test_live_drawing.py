@@ -3,17 +3,20 @@
 from __future__ import annotations
 
 from dataclasses import replace
+from itertools import pairwise
 
 import handmade
 import networkx as nx
 import oracles
 import pytest
-from page.pages import HOSTILE, STAIRS, crowded, result_of, sluice, text_of
+from page.pages import HOSTILE, RING, RING_JOB, STAIRS, crowded, result_of, sluice, text_of
 
-from contactlogic.design import Result
+from contactlogic.design import Bound, Design, Result
+from contactlogic.job import load_job
 from contactlogic.job.model import Supply
 from contactlogic.network import Network, folded
 from contactlogic.page import Section, page
+from contactlogic.sequencer import as_sequencer, as_table_job
 
 
 def gray(bits: int):
@@ -211,3 +214,38 @@ def test_without_its_script_the_page_still_shows_everything(browser, tmp_path) -
     assert tab.locator("noscript p").first.is_visible()
     assert not tab.locator("button.relay").first.is_visible()
     context.close()
+
+
+def test_a_sequence_is_stepped_through(opened, tmp_path) -> None:
+    """Each listed and inserted state in turn; the coils call for just the move that comes next."""
+    (tmp_path / "ring.toml").write_text(RING_JOB)
+    job = load_job(tmp_path / "ring.toml")
+    design = Design("bridge", RING, Bound(4, False), 16)
+    result = as_sequencer(Result(as_table_job(job), (design,), RING.relays), job)
+    seen = opened(page(result, text_of(result)))
+    states = ["1100", "0100", "0110", "0010", "0011", "0001", "1001", "1000", "1100"]
+    onward = seen.drawing().locator(".onward button")
+    for place, (here, there) in enumerate(pairwise(states)):
+        state = {name: int(digit) for name, digit in zip(RING.relays, here, strict=True)}
+        assert_shows(seen, 0, RING, state, result)
+        moving = next(i for i in range(4) if here[i] != there[i])
+        word = "operates" if there[moving] == "1" else "releases"
+        slowly = " slowly" if word == "releases" else ""
+        first = f"By their coils: {RING.relays[moving]} {word}{slowly}"
+        assert first in seen.state()["said"], "quick ones come first"
+        assert onward.all_text_contents() == [f"Step on: {RING.relays[moving]} {word}"]
+        assert seen.drawing().locator("select.step").input_value() == str(place)
+        onward.focus()
+        seen.tab.keyboard.press("Enter")
+        assert seen.tab.evaluate("document.activeElement.parentElement.className") == "onward"
+    assert seen.drawing().locator("select.step").input_value() == "0"
+    seen.drawing().locator("button.before").click()
+    assert seen.drawing().locator("select.step").input_value() == str(len(states) - 2)
+    seen.drawing().locator("button.release").click()
+    assert seen.drawing().locator("select.step").input_value() == "-1"
+    assert_shows(seen, 0, RING, dict.fromkeys(RING.relays, 0), result)
+    seen.drawing().locator("select.step").select_option("4")
+    state = {name: int(digit) for name, digit in zip(RING.relays, "0011", strict=True)}
+    assert_shows(seen, 0, RING, state, result)
+    seen.drawing().locator("button.relay").nth(2).click()  # by hand, to the next of the list
+    assert seen.drawing().locator("select.step").input_value() == "5"

@@ -156,8 +156,10 @@ class LiveDrawing {
     const said = [`Row ${row}. Operated: ${named(relays)}. On: ${named(lit)}. Off: ${named(dark)}.`];
     const waiting = model.columns
       .filter((relay) => model.relays[relay].coil !== null && on[model.relays[relay].coil] !== operated[relay])
-      .map((relay) => `${model.relays[relay].name} ${operated[relay] ? "releases" : "operates"}`);
-    if (model.steps.length) said.push(waiting.length ? `By its coil: ${waiting.join(", ")}.` : "No relay moves by its coil.");
+      .map((relay) => ({ relay, slow: model.relays[relay].slow[Number(operated[relay])] }))
+      .sort((one, other) => Number(one.slow) - Number(other.slow))
+      .map(({ relay, slow }) => `${model.relays[relay].name} ${operated[relay] ? "releases" : "operates"}${slow ? " slowly" : ""}`);
+    if (model.steps.length) said.push(waiting.length ? `By their coils: ${waiting.join(", ")}.` : "No relay moves by its coil.");
     this.root.querySelector(".state").textContent = said.join(" ");
   }
 
