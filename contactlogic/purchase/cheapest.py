@@ -25,11 +25,12 @@ from contactlogic.purchase.parts import Part, PartsList
 from contactlogic.purchase.prices import Prices, least_price, wired_apart
 from contactlogic.purchase.schedule import Drawer, Schedule, schedule_of
 from contactlogic.sequencer import SequencerResult
-from contactlogic.synthesis import Search
+from contactlogic.synthesis import EFFORT, Search
 
 __all__ = ["Cheapest", "Offer", "cheapest"]
 
 _FEWEST = 0.4  # of the time goes to the search for the fewest poles
+_WIDER = 2  # times the windows of the search for the fewest poles: there is more to choose from
 _AGAIN = 0.4  # of what is left is kept for a search within the stock, where stock may run short
 
 
@@ -225,7 +226,11 @@ class _Shop:
         """The search, for the least price."""
         prices = self._prices(job, offered, together=isinstance(runs[0], SequencerResult))
         poles = min(_bound(runs, design.form) for design in runs[0].designs)
-        return replace(search, price=prices, bargain=int(least_price(job, prices, poles) * 100))
+        bargain = int(least_price(job, prices, poles) * 100)
+        effort = search.effort
+        if search.seconds is None:
+            effort = _WIDER * (EFFORT if effort is None else effort)
+        return replace(search, price=prices, bargain=bargain, effort=effort)
 
     def overdrawn(self, run: Result, offered: Sequence[Part]) -> list[Part]:
         """Parts of which the cheapest purchase without a look at the stock takes too many."""
