@@ -24,6 +24,7 @@ from contactlogic.minimize import covers
 from contactlogic.sequence.candidates import contacts_of, formulas, plain_formulas
 from contactlogic.sequence.drives import TableDrives
 from contactlogic.sequence.groups import GroupMotion
+from contactlogic.sequence.mending import mend, wrong_drives
 from contactlogic.sequence.motion import Motion, MoveRules, build_motion
 from contactlogic.sequence.prove import move_rules, wanted_sequence
 from contactlogic.sequence.recovery import Recovery, Wanted, recover
@@ -36,7 +37,8 @@ from contactlogic.truth import Target, all_rows
 __all__ = ["MOST_COLUMNS", "NoRepair", "Repair", "cheapest_repair", "repair_json"]
 
 MOST_COLUMNS = 10
-"""Most relays and inputs for which a repair is looked for."""
+"""Most relays and inputs up to which every drive that could repair is considered."""
+
 
 _WIRED = 5  # columns up to which poles are counted on wiring; above, one for each contact
 _EFFORT = 4  # windows for each wiring
@@ -58,6 +60,8 @@ class Repair:
         poles_after: the same with the change.
         wired: whether the poles were counted on wiring found; if not, they are what the
             formulas take at most, one for each contact.
+        cheapest: whether formulas were tried by rising number of contacts; if not, this is the
+            best found.
     """
 
     relay: str
@@ -66,6 +70,7 @@ class Repair:
     poles_before: int
     poles_after: int
     wired: bool
+    cheapest: bool = True
 
 
 @dataclass(frozen=True)
@@ -94,6 +99,7 @@ def repair_json(repair: Repair | NoRepair) -> dict[str, Any]:
         "poles_before": repair.poles_before,
         "poles_after": repair.poles_after,
         "poles_are": "wired" if repair.wired else "at most",
+        "cheapest": repair.cheapest,
     }
 
 
@@ -112,7 +118,7 @@ def cheapest_repair(
         expansion: the sequence they are meant for.  Without one the largest trap is kept.
     """
     if len(job.columns) > MOST_COLUMNS:
-        return NoRepair(f"none is looked for above {MOST_COLUMNS} relays and inputs")
+        return _mended(job, recovery, expansion, watch or Watch())
     case = _Case(job, recovery, expansion, watch or Watch())
     if isinstance(case.columns, str):
         return NoRepair(case.columns)
@@ -136,6 +142,20 @@ def cheapest_repair(
     after, best = min(counted, key=lambda one: one[0])
     name = job.columns[best.column]
     return Repair(name, job.formulas[name], best.text, before, after, len(job.columns) <= _WIRED)
+
+
+def _mended(
+    job: DrivesJob, recovery: Recovery, expansion: Expansion | None, watch: Watch
+) -> Repair | NoRepair:
+    """The best change found of one drive, among many columns."""
+    found = mend(job, recovery, expansion, watch)
+    if isinstance(found, str):
+        return NoRepair(found)
+    name, cover = found
+    before = sum(contacts_of(drive) for drive in job.drives.values())
+    after = before - contacts_of(job.drives[name]) + cover.literals
+    text = cover.to_text(job.columns)
+    return Repair(name, job.formulas[name], text, before, after, False, False)
 
 
 class _Case:
@@ -169,11 +189,7 @@ class _Case:
             }
             wrong = [i for i in self.columns if self._wrong(i)]
             if len(wrong) > 1:
-                names = " and ".join(job.columns[i] for i in wrong)
-                self.columns = (
-                    f"the drives of {names} are wrong in states of the sequence, so that no change "
-                    "of one drive alone repairs it"
-                )
+                self.columns = wrong_drives([job.columns[i] for i in wrong])
             elif wrong:
                 self.columns = wrong
         else:
@@ -277,7 +293,8 @@ class _Case:
         looked = proved = 0
         seen = {self.tables[column]}
         plain = plain_formulas(target, self.job.columns)
-        for contacts, table, formula in merge(self.formulas, plain, key=lambda one: one[0]):
+        # the plain ones first among equals: there are few, and they are what is usual
+        for contacts, table, formula in merge(plain, self.formulas, key=lambda one: one[0]):
             if found and contacts > found[0].contacts:
                 break
             if (table ^ target.on) & ~target.free or table in seen:

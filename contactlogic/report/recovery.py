@@ -182,7 +182,8 @@ def repair_lines(repair: Repair | NoRepair) -> Iterator[str]:
     if isinstance(repair, NoRepair):
         yield f"no repair: {repair.why}"
         return
-    yield f"cheapest repair: change the drive of {repair.relay}"
+    kind = "cheapest repair" if repair.cheapest else "best repair found"
+    yield f"{kind}: change the drive of {repair.relay}"
     yield f"  from  {repair.before}"
     yield f"  to    {repair.after}"
     least = "" if repair.wired else "at most "
