@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import shutil
 import sys
-from collections.abc import Iterable, Mapping
+from collections.abc import Iterable
 from dataclasses import dataclass, field, replace
 from pathlib import Path
 from time import monotonic
@@ -16,6 +16,7 @@ from contactlogic.design import Result
 from contactlogic.job.model import Job, PatternJob
 
 if TYPE_CHECKING:
+    from contactlogic.report.papers import Papers
     from contactlogic.synthesis import Forms, Search
 
 __all__ = ["Request", "run", "screen_width", "searching", "wired"]
@@ -102,7 +103,7 @@ def run(request: Request) -> Result:
     )
     files = dict(made.files)
     if request.page:
-        files["report.html"] = _page(result, files)
+        files["report.html"] = _page(result, made)
     said = summary(result, known, width=screen_width(), verbose=request.verbose)
     said += priced_text(found, width=screen_width())
     write_folder(folder, files, force=request.force)  # last, so that a fault leaves nothing
@@ -117,13 +118,14 @@ def run(request: Request) -> Result:
     return result
 
 
-def _page(result: Result, files: Mapping[str, bytes]) -> bytes:
+def _page(result: Result, made: Papers) -> bytes:
     """The papers as one page."""
     from contactlogic.page import page
     from contactlogic.report.sequencer import pictures
 
-    shown = [pictures(files, design.form) for design in result.designs]
-    return page(result, files["report.md"].decode(), pictures=shown).encode()
+    shown = [pictures(made.files, design.form) for design in result.designs]
+    text = made.files["report.md"].decode()
+    return page(result, text, sheets=made.sheets, pictures=shown).encode()
 
 
 def searching(request: Request, now: float) -> float | None:

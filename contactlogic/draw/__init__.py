@@ -12,14 +12,13 @@ from contactlogic.draw.dot import dot_text
 from contactlogic.draw.render import render
 from contactlogic.draw.sheet import Sheet
 from contactlogic.draw.states import state_graph
-from contactlogic.job.model import Fittings, LoadKind, Supply
+from contactlogic.job.model import Fittings, Job, LoadKind, Supply
 from contactlogic.network import Network
 
 __all__ = [
     "bridge_drawing",
     "design_sheet",
-    "draw_bridge",
-    "draw_ladder",
+    "dot_text",
     "ladder_drawing",
     "render",
     "sequence_chart",
@@ -27,20 +26,19 @@ __all__ = [
 ]
 
 
-def design_sheet(
-    design: Design,
-    *,
-    title: str,
-    supply: Supply = Supply(),  # noqa: B008 - frozen
-    kinds: Mapping[str, LoadKind | None] | None = None,
-    separate: Collection[str] = (),
-    fittings: Mapping[str, Fittings] | None = None,
-) -> Sheet:
-    """The sheet of a finished design in its own form, everything tagged with what it shows.
+def design_sheet(design: Design, job: Job) -> Sheet:
+    """The sheet of a design in its own form, with what its job states beside the network.
 
-    Parameters as for `ladder_drawing`; `dot_text` turns it into the text of the drawing.
+    Everything is tagged with what it shows; `dot_text` turns the sheet into the drawing's text.
     """
-    facts = SheetFacts(title, design.fingerprint, supply, kinds or {}, separate, fittings or {})
+    facts = SheetFacts(
+        job.title,
+        design.fingerprint,
+        job.supply,
+        {load.name: load.kind for load in job.loads},
+        job.limits.contacts,
+        job.bench.fittings,
+    )
     lay_out = arrange if design.form == "ladder" else arrange_bridge
     return lay_out(design.network, facts)
 
@@ -73,27 +71,6 @@ def ladder_drawing(
     return dot_text(arrange(network, facts))
 
 
-def draw_ladder(
-    design: Design,
-    *,
-    title: str,
-    supply: Supply = Supply(),  # noqa: B008 - frozen
-    kinds: Mapping[str, LoadKind | None] | None = None,
-    separate: Collection[str] = (),
-    fittings: Mapping[str, Fittings] | None = None,
-) -> str:
-    """`ladder_drawing` of a finished design."""
-    return ladder_drawing(
-        design.network,
-        title=title,
-        fingerprint=design.fingerprint,
-        supply=supply,
-        kinds=kinds,
-        separate=separate,
-        fittings=fittings,
-    )
-
-
 def bridge_drawing(
     network: Network,
     *,
@@ -114,24 +91,3 @@ def bridge_drawing(
     """
     facts = SheetFacts(title, fingerprint, supply, kinds or {}, separate, fittings or {})
     return dot_text(arrange_bridge(network, facts))
-
-
-def draw_bridge(
-    design: Design,
-    *,
-    title: str,
-    supply: Supply = Supply(),  # noqa: B008 - frozen
-    kinds: Mapping[str, LoadKind | None] | None = None,
-    separate: Collection[str] = (),
-    fittings: Mapping[str, Fittings] | None = None,
-) -> str:
-    """`bridge_drawing` of a finished design."""
-    return bridge_drawing(
-        design.network,
-        title=title,
-        fingerprint=design.fingerprint,
-        supply=supply,
-        kinds=kinds,
-        separate=separate,
-        fittings=fittings,
-    )

@@ -87,7 +87,7 @@ def page(
             chapters.append(_Chapter(f"part-{count}", part.title, part.html))
             continue
         index = result.designs.index(design)
-        sheet = sheets[index] if sheets else _sheet(design, result)
+        sheet = sheets[index] if sheets else design_sheet(design, result.job)
         chapters.append(
             _Chapter(
                 f"part-{count}",
@@ -109,18 +109,6 @@ def page(
         style=style,
         script=script,
         policy=_policy(style, script),
-    )
-
-
-def _sheet(design: Design, result: Result) -> Sheet:
-    job = result.job
-    return design_sheet(
-        design,
-        title=job.title,
-        supply=job.supply,
-        kinds={load.name: load.kind for load in job.loads},
-        separate=job.limits.contacts,
-        fittings=job.bench.fittings,
     )
 
 

@@ -6,6 +6,7 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
 from contactlogic.design import Result
+from contactlogic.draw.sheet import Sheet
 from contactlogic.errors import RenderError
 from contactlogic.purchase.cheapest import Cheapest
 from contactlogic.purchase.schedule import Schedule
@@ -22,10 +23,14 @@ __all__ = ["Papers", "papers", "purchase_lines"]
 
 @dataclass(frozen=True)
 class Papers:
-    """Files by their path inside the output folder, and what the user should be told of them."""
+    """Files by their path inside the output folder, and what the user should be told of them.
+
+    `sheets` holds the drawing of each design before it was rendered.
+    """
 
     files: Mapping[str, bytes]
     notes: tuple[str, ...] = ()
+    sheets: tuple[Sheet, ...] = ()
 
 
 def papers(
@@ -47,7 +52,7 @@ def papers(
     Where no renderer can be run the drawing's text takes the place of its pictures, and a note
     says so.
     """
-    from contactlogic.draw import draw_bridge, draw_ladder, render
+    from contactlogic.draw import design_sheet, dot_text, render
     from contactlogic.report.designfile import dumps
 
     lists = [
@@ -65,17 +70,11 @@ def papers(
         "report.md": report(result, facts, lists, purchase_lines(schedules, cheapest)).encode(),
     }
     notes = []
+    sheets: list[Sheet] = []
     for index, design in enumerate(result.designs):
         form = design.form
-        draw = draw_ladder if form == "ladder" else draw_bridge
-        text = draw(
-            design,
-            title=result.job.title,
-            supply=result.job.supply,
-            kinds={load.name: load.kind for load in result.job.loads},
-            separate=result.job.limits.contacts,
-            fittings=result.job.bench.fittings,
-        )
+        sheets.append(design_sheet(design, result.job))
+        text = dot_text(sheets[-1])
         try:
             pictures = render(text, ("svg", "png"))
         except RenderError as error:
@@ -95,7 +94,7 @@ def papers(
             more, said = sequence_files(result, index)
             files |= more
             notes += said
-    return Papers(files, tuple(notes))
+    return Papers(files, tuple(notes), tuple(sheets))
 
 
 def purchase_lines(schedules: Sequence[Schedule], cheapest: Cheapest | None) -> list[str]:

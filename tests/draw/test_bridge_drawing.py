@@ -18,10 +18,11 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from contactlogic.design import Bound, Design, fingerprint
-from contactlogic.draw import bridge_drawing, bridge_order, draw_bridge, render
-from contactlogic.job.model import LoadKind, Supply
+from contactlogic.draw import bridge_drawing, bridge_order, design_sheet, dot_text, render
+from contactlogic.job.model import Job, Load, LoadKind, Supply
 from contactlogic.network import Network, Pole
 from contactlogic.terminals import RETURN, wire_numbers
+from contactlogic.truth import Target
 
 GOLDEN = Path(__file__).parent / "golden"
 KINDS: tuple[LoadKind | None, ...] = ("lamp", "horn", "valve", "coil", "motor", "other", None)
@@ -249,9 +250,9 @@ def test_the_sheet_says_what_it_is() -> None:
 def test_a_design_is_drawn_as_its_network() -> None:
     shown = staircase()
     design = Design("bridge", shown, Bound(2, True), 4)
-    kinds: dict[str, LoadKind | None] = {"LAMP": "lamp"}
-    text = draw_bridge(design, title="Weir", supply=Supply("+24 V", "0 V"), kinds=kinds)
-    assert text == drawing_of(shown)
+    loads = (Load("LAMP", Target(2, 0), kind="lamp"),)
+    job = Job("Weir", shown.relays, loads, 0, supply=Supply("+24 V", "0 V"))
+    assert dot_text(design_sheet(design, job)) == drawing_of(shown)
 
 
 @pytest.mark.parametrize(

@@ -10,12 +10,14 @@ from strategies import networks, series_parallel_networks
 from contactlogic.design import Bound, Design
 from contactlogic.draw import design_sheet
 from contactlogic.draw.sheet import Line, Sheet
+from contactlogic.job.model import Job
 from contactlogic.network import Network
 from contactlogic.terminals import RETURN
 
 
 def sheet_of(network: Network, form: str) -> Sheet:
-    return design_sheet(Design(form, network, Bound(0, False), 1), title="")
+    job = Job("", network.relays, (), 0)
+    return design_sheet(Design(form, network, Bound(0, False), 1), job)
 
 
 def ends_of(sheet: Sheet, net: str | None) -> list[tuple[float, float]]:
