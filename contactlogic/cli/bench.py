@@ -1,4 +1,4 @@
-"""The commands for the bench, and their options: hazards, faults."""
+"""The commands for the bench, and their options: hazards, faults, test plan."""
 
 from __future__ import annotations
 
@@ -45,6 +45,7 @@ def register(app: typer.Typer) -> None:
     """Add the commands."""
     app.command()(hazards)
     app.command()(faults)
+    app.command("testplan")(plan_of_tests)
 
 
 def hazards(
@@ -95,3 +96,28 @@ def faults(
         named = () if fail_off is None else (fail_off,)
         if not faulting.run(faulting.Request(wanted, named, json)):
             raise typer.Exit(Status.WRONG)
+
+
+def plan_of_tests(
+    source: _Source,
+    job: _Job = None,
+    form: _Form = None,
+    sheet: Annotated[
+        Path | None,
+        typer.Option(metavar="FILE", help="Write the commissioning sheet there, as Markdown."),
+    ] = None,
+    force: Annotated[
+        bool, typer.Option("--force", help="Write even where the file is there already.")
+    ] = False,
+    json: _Json = False,
+    quiet: _Quiet = False,
+    loads: _Loads = None,
+    unlisted: _Unlisted = None,
+) -> None:
+    """Plan the fewest rows to set, and loads to look at, that show every single fault."""
+    from contactlogic.cli import planning
+    from contactlogic.cli.subject import Source
+
+    with guarded(keep=str(source)):
+        wanted = Source(source, job, None if form is None else form.value, loads, unlisted, quiet)
+        planning.run(planning.Request(wanted, sheet, force, json))

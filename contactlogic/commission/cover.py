@@ -8,57 +8,29 @@ other does not is not needed (McCluskey 1956, for tests as for covers).
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from functools import reduce
+from operator import or_
 
 from contactlogic.integer import Program
 from contactlogic.truth import rows_of
 
-__all__ = ["Choice", "fewest"]
+__all__ = ["fewest_looks", "fewest_rows"]
 
-_JOINT = 1500  # pairs of a row and a look up to which both are chosen at once
+_JOINT = 300  # pairs of a row and a look up to which both are chosen at once
 _EFFORT = 20.0  # deterministic seconds of the engine, for each program
 
 
-@dataclass(frozen=True)
-class Choice:
-    """Rows chosen, and looks in each.
-
-    Args:
-        looks: chosen row -> looks, ascending; looks are counted from 0.
-        at_least: so many rows are needed (proved).
-        least_looks: whether no set of as few rows needs fewer looks (proved).
-    """
-
-    looks: dict[int, tuple[int, ...]]
-    at_least: int
-    least_looks: bool
-
-
-def fewest(count: int, shown: Sequence[tuple[int, ...]]) -> Choice:
-    """The least choice.
+def fewest_rows(count: int, shown: Sequence[tuple[int, ...]]) -> tuple[list[int], int]:
+    """Rows that show every fault at some look, and how many are needed at least (proved).
 
     Args:
         count: how many rows there are.
         shown: for each fault the rows that show it, as bits: first without any look, then at each
             look.  Every fault is shown in some row.
     """
-    if not shown:
-        return Choice({}, 0, True)
-    rows, at_least = _fewest_rows(count, shown)
-    looks = len(shown[0]) - 1
-    joint = count * looks <= _JOINT
-    chosen, proved = _fewest_looks(count, shown, range(count) if joint else rows, len(rows))
-    return Choice(chosen, at_least, joint and proved)
-
-
-def _fewest_rows(count: int, shown: Sequence[tuple[int, ...]]) -> tuple[list[int], int]:
-    unions = set()
-    for tables in shown:
-        union = 0
-        for table in tables:
-            union |= table
-        unions.add(union)
-    needs = _least_sets(unions)
+    needs = _least_sets({reduce(or_, tables) for tables in shown})
+    if not needs:
+        return [], 0
     offers = _columns(count, needs)
     program = Program(seed=0, effort=_EFFORT)
     used = {row: program.binary() for row in offers}
@@ -68,6 +40,21 @@ def _fewest_rows(count: int, shown: Sequence[tuple[int, ...]]) -> tuple[list[int
     if not program.solve():
         return _greedy(needs, offers), 1
     return [row for row, use in used.items() if program.value(use)], program.at_least
+
+
+def fewest_looks(
+    count: int, shown: Sequence[tuple[int, ...]], rows: Sequence[int]
+) -> tuple[dict[int, tuple[int, ...]], bool]:
+    """Looks in each row, and whether no set of as few rows needs fewer (proved).
+
+    Args:
+        count, shown: as for `fewest_rows`.
+        rows: rows that do; on a small panel others, as few, may be chosen instead.
+    """
+    looks = max(map(len, shown), default=1) - 1
+    joint = count * looks <= _JOINT
+    chosen, proved = _looks(count, shown, range(count) if joint else rows, len(rows))
+    return chosen, joint and proved
 
 
 def _greedy(needs: Sequence[int], offers: Sequence[int]) -> list[int]:
@@ -102,11 +89,11 @@ def _columns(count: int, needs: Sequence[int]) -> list[int]:
     return sorted(kept)
 
 
-def _fewest_looks(
+def _looks(
     count: int, shown: Sequence[tuple[int, ...]], among: Sequence[int] | range, most: int
 ) -> tuple[dict[int, tuple[int, ...]], bool]:
     """Looks, and the rows for them: at most `most` of those `among`."""
-    looks = len(shown[0]) - 1
+    looks = max(map(len, shown), default=1) - 1
     allowed = sum(1 << row for row in among)
     # One number for a fault: which rows show it without a look, then at each look.
     needs = _least_sets(

@@ -2,11 +2,11 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
 from random import Random
 
-from contactlogic.commission.cover import Choice, fewest
+from contactlogic.commission.cover import fewest_looks, fewest_rows
 from contactlogic.commission.detect import Suspect, Watched, shown_by, suspects, union
 from contactlogic.commission.order import moves_of, ordered
 from contactlogic.fault import Fault, Panel, Simulator
@@ -16,7 +16,7 @@ __all__ = ["Look", "Step", "TestPlan", "Unseen", "plan_test"]
 
 _ALL_TRIED = 1024  # rows up to which all are candidates for the plan
 _SAMPLE = 512
-_AT_ONCE = 400  # suspects added to what must be shown before the choice is made again
+_AT_ONCE = 1 << 20  # suspects times rows, tried before a choice is made again
 
 
 @dataclass(frozen=True)
@@ -116,18 +116,45 @@ def plan_test(panel: Panel, listed: int, *, seed: int = 0) -> TestPlan:
     exhaustive = len(every) <= _ALL_TRIED
     watched = Watched(panel, every if exhaustive else _sample(panel, every, seed), exact=exhaustive)
     _add(watched, single, every)
-    waiting, missed = swapped, swapped
-    while True:
-        choice = fewest(len(watched.rows), list(watched.seen().values()))
-        missed = _missed(watched, choice, missed) or _missed(watched, choice, waiting)
-        if not missed:
-            break
-        fresh = missed[:: 1 + len(missed) // _AT_ONCE]
-        _add(watched, fresh, every)
-        waiting = [suspect for suspect in waiting if suspect not in watched.shown]
-        missed = [suspect for suspect in missed if suspect not in watched.shown]
-    order = ordered([watched.rows[k] for k in choice.looks])
-    steps = _steps(watched, choice.looks, order, waiting)
+    whole = tuple(range(len(panel.loads)))
+    waiting = swapped
+    if len(swapped) * len(watched.rows) <= _AT_ONCE:
+        _add(watched, swapped, every)
+        waiting = []
+
+    def choose(choice: Callable[[], dict[int, tuple[int, ...]]]) -> dict[int, tuple[int, ...]]:
+        """A choice of rows and looks that misses nothing; what one misses is watched from then."""
+        nonlocal waiting
+        missed = waiting
+        while True:
+            looks = choice()
+            missed = _missed(watched, looks, missed) or _missed(watched, looks, waiting)
+            if not missed:
+                return looks
+            _add(watched, missed[:: 1 + len(missed) * len(watched.rows) // _AT_ONCE], every)
+            waiting = [suspect for suspect in waiting if suspect not in watched.shown]
+            missed = [suspect for suspect in missed if suspect not in watched.shown]
+
+    at_least = 0
+
+    def rows_alone() -> dict[int, tuple[int, ...]]:
+        nonlocal at_least
+        rows, at_least = fewest_rows(len(watched.rows), list(watched.seen().values()))
+        return dict.fromkeys(rows, whole)
+
+    least_looks = False
+
+    def with_looks() -> dict[int, tuple[int, ...]]:
+        nonlocal least_looks
+        looks, least_looks = fewest_looks(
+            len(watched.rows), list(watched.seen().values()), list(rows)
+        )
+        return looks
+
+    rows = choose(rows_alone)
+    looks = choose(with_looks)
+    order = ordered([watched.rows[k] for k in looks])
+    steps = _steps(watched, looks, order, waiting)
     faults = list(dict.fromkeys(suspect.fault for suspect in (*single, *swapped)))
     return TestPlan(
         panel.inputs,
@@ -136,15 +163,17 @@ def plan_test(panel: Panel, listed: int, *, seed: int = 0) -> TestPlan:
         len(swapped),
         same,
         _unseen(watched, listed),
-        choice.at_least if exhaustive else min(1, len(steps)),
-        exhaustive and choice.at_least == len(steps),
-        exhaustive and choice.least_looks,
+        at_least if exhaustive else min(1, len(steps)),
+        exhaustive and at_least == len(steps),
+        exhaustive and least_looks,
         moves_of(order),
     )
 
 
-def _missed(watched: Watched, choice: Choice, tried: Sequence[Suspect]) -> list[Suspect]:
-    caught = watched.caught(choice.looks, tried)
+def _missed(
+    watched: Watched, looks: Mapping[int, Sequence[int]], tried: Sequence[Suspect]
+) -> list[Suspect]:
+    caught = watched.caught(looks, tried)
     return [suspect for suspect, yes in zip(tried, caught, strict=True) if not yes]
 
 
