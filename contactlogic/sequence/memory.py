@@ -27,6 +27,7 @@ from contactlogic.sequence.steps import (
 __all__ = ["add_memory", "resolve"]
 
 _ORDERS = 1500  # step orders tried before whole sets of them
+_NOTES = 4  # orders that have a sentence each
 _MOST = 6  # memory relays at most; more would tell more than 64 occurrences apart
 _SECONDS = 20.0  # for making the memory's moves fewer; its number is settled before
 
@@ -47,7 +48,7 @@ def resolve(table: SequenceTable, *, wired: bool = False) -> Expansion:
         return expansion
     orders = _best_orders(table, expansion)
     expansion = expand(table, orders)
-    notes = [_order_note(table, link, order) for link, order in sorted(orders.items())]
+    notes = _order_notes(table, orders)
     unclear = ambiguities(expansion)
     if not unclear:
         return replace(expansion, notes=tuple(notes))
@@ -75,12 +76,20 @@ def _forbidden(
     )
 
 
-def _order_note(table: SequenceTable, link: tuple[int, int], order: tuple[int, ...]) -> str:
-    names = ", then ".join(table.columns[i] for i in order)
-    return (
-        f"From row {link[0]} to row {link[1]} the order of moves is {names}, so that no state "
-        "occurs twice with different wants."
-    )
+def _order_notes(table: SequenceTable, orders: Orders) -> list[str]:
+    """Which orders were chosen: a sentence for each, or one for many."""
+    chosen = [
+        (here, there, ", then ".join(table.columns[i] for i in order))
+        for (here, there), order in sorted(orders.items())
+    ]
+    why = "so that no state occurs twice with different wants"
+    if len(chosen) <= _NOTES:
+        return [
+            f"From row {here} to row {there} the order of moves is {order}, {why}."
+            for here, there, order in chosen
+        ]
+    said = "; ".join(f"from row {here} {order}" for here, _, order in chosen)
+    return [f"The order of moves was chosen {why}: {said}."]
 
 
 def _best_orders(table: SequenceTable, expansion: Expansion) -> Orders:

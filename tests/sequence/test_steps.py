@@ -291,5 +291,7 @@ def test_many_transitions_are_turned_round_alike():
     names = " ".join(f"K{k}" for k in range(n))
     done = resolve(table(names, " ".join(row.replace(" ", "") for row in rows)))
     assert done.memory == ()
+    assert len(done.notes) == 1
+    assert "from row 2 K2, then K1; from row 3" in done.notes[0]
     assert len(done.steps) == 2 * n
     assert sorted(step.state.bit_count() for step in done.steps) == [1] * n + [2] * n
