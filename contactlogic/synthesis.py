@@ -21,7 +21,7 @@ from contactlogic.ladder.synthesise import LadderTask, best_ladder, plain_ladder
 from contactlogic.minimize import Cover, covers
 from contactlogic.network import Network
 from contactlogic.search.best import Task, best_networks
-from contactlogic.search.budgets import excess, over_budget, with_repeaters
+from contactlogic.search.budgets import excess, over_budget, refuse_at_once, with_repeaters
 from contactlogic.search.catalogue import Entry, least_bridge, least_contacts, least_ladder
 from contactlogic.search.mesh import to_network
 from contactlogic.search.portfolio import Progress
@@ -31,13 +31,16 @@ __all__ = ["EFFORT", "Forms", "Search", "finish", "synthesise", "wire"]
 
 Forms = Literal["ladder", "bridge", "both"]
 
-EFFORT = 40
-"""Windows for each walker where neither effort nor seconds are given."""
+EFFORT, SMALL_EFFORT = 40, 3
+"""Windows for each walker where neither effort nor seconds are given; the second with few relays,
+where a user waits for the whole job no longer than for the program to start."""
 
 _CEILING = 600.0  # seconds for covers and ladder where only an effort is given
 _CONFLICTS = 2000  # of the proof, for each window of effort
 _COVER_SHARE = 0.3  # of the time goes to covers at most, shared out evenly over the loads
 _LADDER_SHARE = 0.4
+_LEAST_SHARE = 0.05  # goes to the search, however long the papers will take
+_SMALL_RELAYS = 4  # up to here the least effort is the default
 _FEW_RELAYS = 5  # up to here a ladder takes a second or so
 
 
@@ -59,7 +62,7 @@ def wire(
         form: "ladder", "bridge" or "both"; the ladder comes first.
         seconds: wall-clock limit; the search uses it up unless the least is proved before.
         effort: windows for each walker instead; equal job, seed and effort give equal results.
-            `EFFORT` if neither is given.
+            `EFFORT` if neither is given, `SMALL_EFFORT` up to four relays.
         seed: another seed searches in another order.
         workers: walking processes at a time.
         repeaters: whether a relay over its pole budget may be given repeaters (a second relay
@@ -82,6 +85,8 @@ class Search:
     """How to search; the arguments of `wire`, and what is to be cheap.
 
     Args:
+        keep_back: seconds of `seconds` that what follows the search will take, from the poles of
+            the ladder it starts with (drawing takes longer where there is more to draw).
         price: what a network costs; weighs before the number of poles, picklable. None for none.
         bargain: a price that no network is known to go below.
     """
@@ -93,6 +98,7 @@ class Search:
     workers: int = 2
     repeaters: bool = False
     watch: Callable[[Sequence[Form], Progress], None] | None = None
+    keep_back: Callable[[int], float] | None = None
     price: Callable[[Network], int] | None = None
     bargain: int = 0
 
@@ -127,29 +133,32 @@ def synthesise(
     """
     seconds, effort, seed = search.seconds, search.effort, search.seed
     if seconds is None and effort is None:
-        effort = EFFORT
+        effort = SMALL_EFFORT if len(job.relays) <= _SMALL_RELAYS else EFFORT
     deadline = monotonic() + (_CEILING if seconds is None else seconds)
     forms = search.forms
-    found = covered or _covers(job, deadline, seed)
-    statuses = tuple(_status(job, name, least[0]) for name, least in found.items())
-    if (
-        penalty is None
-        and search.price is None
-        and (shelf := _from_catalogue(job, forms)) is not None
-    ):
-        designs = (
-            _proved(job, form, _named(entry, job), {}, entry.at_least, statuses)
-            for form, entry in shelf.items()
-        )
-        return Result(job, tuple(designs), job.relays)
-    known = list(starts)
-    if covered is None:
-        at_home = job
-        if home is not None:
-            loads = tuple(replace(load, target=home[load.name]) for load in job.loads)
-            at_home = replace(job, loads=loads)
-        narrow = found if home is None else _covers(at_home, deadline, seed)
-        known.insert(0, _ladder(at_home, narrow, deadline, seed, timed=seconds is not None))
+    refuse_at_once(job, search.repeaters)
+    try:
+        found = covered or _covers(job, deadline, seed)
+        if (
+            penalty is None
+            and search.price is None
+            and (shelf := _from_catalogue(job, forms)) is not None
+        ):
+            return _shelved(job, shelf, found)
+        known = list(starts)
+        if covered is None:
+            at_home = job
+            if home is not None:
+                loads = tuple(replace(load, target=home[load.name]) for load in job.loads)
+                at_home = replace(job, loads=loads)
+            narrow = found if home is None else _covers(at_home, deadline, seed)
+            known.insert(0, _ladder(at_home, narrow, deadline, seed, timed=seconds is not None))
+    except KeyboardInterrupt:
+        return _plain(job, search, home)
+    statuses = _statuses(job, found)
+    if search.keep_back is not None:
+        late = deadline - search.keep_back(len(known[0].poles))
+        deadline = max(late, min(deadline, monotonic() + _LEAST_SHARE * (seconds or 0.0)))
     watch = search.watch
     best = best_networks(
         replace(
@@ -247,8 +256,36 @@ def _from_catalogue(job: Job, forms: Sequence[Form]) -> dict[Form, Entry] | None
     return found
 
 
-def _named(entry: Entry, job: Job) -> Network:
-    return to_network(entry.mesh, job.relays, [job.loads[0].name])
+def _shelved(job: Job, shelf: Mapping[Form, Entry], found: Mapping[str, Sequence[Cover]]) -> Result:
+    """The catalogue's answer."""
+    names = [load.name for load in job.loads]
+    designs = (
+        _proved(
+            job,
+            form,
+            to_network(entry.mesh, job.relays, names),
+            {},
+            entry.at_least,
+            _statuses(job, found),
+        )
+        for form, entry in shelf.items()
+    )
+    return Result(job, tuple(designs), job.relays)
+
+
+def _plain(job: Job, search: Search, home: Mapping[str, Target] | None) -> Result:
+    """What can be had at once where the user stops before the search: plain covers, rungs apart."""
+    wanted = job.targets if home is None else home
+    quick = {name: covers(wanted[name], seconds=0.0) for name in job.targets}
+    network = plain_ladder(_ladder_task(job, quick))
+    return finish(
+        job,
+        search,
+        dict.fromkeys(search.forms, network),
+        at_least=_relays_that_matter(job),
+        statuses=_statuses(job, quick),
+        interrupted=True,
+    )
 
 
 def _covers(job: Job, deadline: float, seed: int) -> dict[str, tuple[Cover, ...]]:
@@ -267,7 +304,18 @@ def _ladder(
     By the clock, a job of many relays is worked on in a child process that can be cut short; what
     it leaves then is the plain ladder of the covers.
     """
-    task = LadderTask(
+    task = _ladder_task(job, found)
+    seconds = max(0.3, _LADDER_SHARE * (deadline - monotonic()))
+    if not timed or len(job.relays) <= _FEW_RELAYS:
+        return best_ladder(task, seconds=seconds, seed=seed).network
+    try:
+        return run(_improved, task, 0.8 * seconds, seed, seconds=seconds)
+    except (ChildCrashed, ChildTimedOut):
+        return plain_ladder(task)
+
+
+def _ladder_task(job: Job, found: Mapping[str, Sequence[Cover]]) -> LadderTask:
+    return LadderTask(
         job.relays,
         job.targets,
         found,
@@ -276,13 +324,6 @@ def _ladder(
         job.isolated,
         job.limits.objective == "contacts",
     )
-    seconds = max(0.3, _LADDER_SHARE * (deadline - monotonic()))
-    if not timed or len(job.relays) <= _FEW_RELAYS:
-        return best_ladder(task, seconds=seconds, seed=seed).network
-    try:
-        return run(_improved, task, 0.8 * seconds, seed, seconds=seconds)
-    except (ChildCrashed, ChildTimedOut):
-        return plain_ladder(task)
 
 
 def _improved(task: LadderTask, seconds: float, seed: int) -> Network:
@@ -348,5 +389,9 @@ def _relays_that_matter(job: Job) -> int:
     return sum(any(load.target.needs(i) for load in job.loads) for i in range(len(job.relays)))
 
 
-def _status(job: Job, name: str, cover: Cover) -> LoadStatus:
-    return LoadStatus(name, cover.to_text(job.relays), cover.literals, cover.terms, cover.proved)
+def _statuses(job: Job, found: Mapping[str, Sequence[Cover]]) -> tuple[LoadStatus, ...]:
+    best = {name: covers[0] for name, covers in found.items()}
+    return tuple(
+        LoadStatus(name, cover.to_text(job.relays), cover.literals, cover.terms, cover.proved)
+        for name, cover in best.items()
+    )

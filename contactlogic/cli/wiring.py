@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import shutil
 import sys
-from collections.abc import Iterable
+from collections.abc import Callable, Iterable
 from dataclasses import dataclass, field, replace
 from pathlib import Path
 from time import monotonic
@@ -19,11 +19,13 @@ if TYPE_CHECKING:
     from contactlogic.report.papers import Papers
     from contactlogic.synthesis import Forms, Search
 
-__all__ = ["Request", "run", "screen_width", "searching", "wired"]
+__all__ = ["Request", "papers_time", "run", "screen_width", "searching", "wired"]
 
 _STOPPED = "stopped early: this is the best found so far"
 
-_STARTING = 0.2  # seconds from the user's return key until a request is there
+# Seconds: from the user's return key until a request is there; for the papers of one form, for
+# each pole, and for each two of them.
+_STARTING, _PAPERS, _A_POLE, _A_PAIR = 0.2, 0.3, 0.008, 2.5e-5
 
 
 @dataclass(frozen=True)
@@ -76,6 +78,7 @@ def run(request: Request) -> Result:
             request.workers,
             request.repeaters,
             watch,
+            keep_back=papers_time(request),
         )
         found = priced(job, search, wired, request.buying, cheapest=request.cheapest)
         result = found.result
@@ -129,17 +132,19 @@ def _page(result: Result, made: Papers) -> bytes:
 
 
 def searching(request: Request, now: float) -> float | None:
-    """Seconds left for the search at `now`, so that the whole command keeps to `--seconds`.
-
-    Kept back is the time that drawing takes: a second or so for each form of a usual job, and more
-    where a long search will leave much to draw.
-    """
+    """Seconds left for search and drawing at `now`, so that the command keeps to `--seconds`."""
     if request.seconds is None:
         return None
+    return max(0.1 * request.seconds, request.seconds - _STARTING - (now - request.began))
+
+
+def papers_time(request: Request) -> Callable[[int], float] | None:
+    """How long the papers take, from the poles of the first ladder."""
+    if request.json:
+        return None
     forms = 2 if request.form == "both" else 1
-    drawing = 0.0 if request.json else forms * (0.3 + 0.02 * request.seconds)
-    left = request.seconds - _STARTING - (now - request.began) - drawing
-    return max(0.1 * request.seconds, left)
+    # the bridge of a crowded network is drawn with ever more crossings
+    return lambda poles: forms * (_PAPERS + _A_POLE * poles + _A_PAIR * poles**2)
 
 
 def wired(job: Wirable, search: Search) -> Result:

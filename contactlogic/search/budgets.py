@@ -10,8 +10,12 @@ from contactlogic.errors import LimitError, Place
 from contactlogic.job.model import Job
 from contactlogic.naming import free_name
 from contactlogic.network import Network, Pole
+from contactlogic.search.problem import Problem
+from contactlogic.search.shares import shortfall
 
-__all__ = ["excess", "over_budget", "with_repeaters"]
+__all__ = ["excess", "over_budget", "refuse_at_once", "with_repeaters"]
+
+_OR_REPEATERS = ", or allow repeaters with --repeaters"
 
 
 def with_repeaters(
@@ -57,6 +61,43 @@ def excess(job: Job, network: Network) -> int:
     return over
 
 
+def refuse_at_once(job: Job, repeaters: bool) -> None:
+    """Refuse budgets that no network can keep, where that shows without a search.
+
+    Repeaters help every relay that has poles at all, but no push-button or contactor.
+
+    Raises:
+        LimitError: with the least that every network needs.
+    """
+    poles = job.limits.poles
+    if repeaters:
+        poles = {relay: most for relay, most in poles.items() if not most}
+    if not poles and not job.limits.contacts:
+        return
+    short = shortfall(
+        Problem(
+            job.relays,
+            job.targets,
+            poles,
+            job.limits.contacts,
+            job.isolated,
+            job.limits.objective,
+        )
+    )
+    if short is None:
+        return
+    who = " and ".join(short.relays)
+    one = "pole" if short.allowed == 1 else short.what
+    together = " together" if len(short.relays) > 1 else ""
+    raise LimitError(
+        f"{who} may use {short.allowed} {one}{together}; every network needs at least "
+        f"{short.least} (proved)",
+        place=Place(file=job.file, section="limits"),
+        expected="budgets that some network keeps",
+        hint="raise the budget" + ("" if repeaters else _OR_REPEATERS),
+    )
+
+
 def over_budget(
     job: Job, found: Mapping[Form, Network], over: Mapping[Form, int], feasible: bool
 ) -> LimitError:
@@ -85,5 +126,5 @@ def over_budget(
         what,
         place=Place(file=job.file, section="limits"),
         expected="budgets that a network found can keep",
-        hint="raise the budget, or allow repeaters with --repeaters",
+        hint="raise the budget" + _OR_REPEATERS,
     )

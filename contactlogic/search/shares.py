@@ -12,19 +12,27 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Mapping
 from dataclasses import dataclass, replace
-from itertools import combinations
+from itertools import combinations, islice
 from typing import Literal
 
-from contactlogic.search.bounds import Demand, least_by_load
+from contactlogic.search.bounds import Demand, least_by_load, needed_kinds, total
 from contactlogic.search.catalogue import Form, bound
 from contactlogic.search.classes import RELAYS
-from contactlogic.search.problem import Problem, needs
+from contactlogic.search.problem import Problem, compositions, needs
 from contactlogic.truth import Target
 
-__all__ = ["Shortfall", "demands_of", "least_for_relay", "least_of_sets", "shortfall"]
+__all__ = [
+    "Shortfall",
+    "demands_of",
+    "least_at_once",
+    "least_for_relay",
+    "least_of_sets",
+    "shortfall",
+]
 
 _MOST_RELAYS = 8
 _MOST_LOOK_UPS = 20_000
+_MOST_WAYS = 2000  # to share poles out, looked at for one size
 
 
 def least_of_sets(problem: Problem) -> dict[int, int]:
@@ -62,6 +70,22 @@ def demands_of(problem: Problem, least: Mapping[int, int]) -> list[Demand]:
         Demand(tuple(mask >> kind.relay & 1 for kind in problem.kinds), poles)
         for mask, poles in sorted(least.items())
     ]
+
+
+def least_at_once(problem: Problem) -> int:
+    """Poles (contacts, for that objective) that every network needs, without any search.
+
+    The least number that can be shared out over the relays so that every bound on a set of them
+    is met.
+    """
+    known = [*least_by_load(problem), *demands_of(problem, least_of_sets(problem))]
+    least = needed_kinds(problem, problem.targets.values())
+    poles = max(total(known), sum(least.values()))
+    while True:
+        ways = list(islice(compositions(problem.kinds, poles, least, {}), _MOST_WAYS + 1))
+        if len(ways) > _MOST_WAYS or any(all(d.met(way) for d in known) for way in ways):
+            return poles
+        poles += 1
 
 
 def _parts(target: Target, kept: tuple[int, ...]) -> Iterator[Target]:

@@ -9,7 +9,7 @@ from pathlib import Path
 import pytest
 
 from contactlogic.cli.progress import line, live
-from contactlogic.cli.wiring import Request, searching
+from contactlogic.cli.wiring import Request, papers_time, searching
 from contactlogic.network import Network, Pole
 from contactlogic.search.mesh import from_network
 from contactlogic.search.portfolio import Progress, Standing
@@ -42,22 +42,16 @@ def test_without_a_limit_none_is_passed_on() -> None:
     assert _left(None, now=9.0) is None
 
 
-@pytest.mark.parametrize("seconds", [5.0, 10.0, 60.0, 600.0])
-def test_the_search_leaves_time_for_drawing_within_a_tenth(seconds: float) -> None:
-    """Ending at once after the search or a tenth late are both within the promise."""
-    for form in ("both", "ladder", "bridge"):
-        left = _left(seconds, form=form)
-        assert left is not None
-        assert 0.8 * seconds <= left < seconds
-    both, one, none = (
-        _left(seconds, form="both"),
-        _left(seconds, form="ladder"),
-        _left(seconds, json=True),
+def test_papers_take_longer_for_more_forms_and_more_poles() -> None:
+    both, one = (
+        papers_time(Request(Path("job.toml"), form=form))  # type: ignore[arg-type]
+        for form in ("both", "bridge")
     )
     assert both is not None
     assert one is not None
-    assert none is not None
-    assert both < one < none < seconds
+    assert 0.1 < one(10) < both(10) < 1.5
+    assert one(30) < one(300)
+    assert papers_time(Request(Path("job.toml"), json=True)) is None
 
 
 def test_what_is_spent_before_the_search_is_taken_off() -> None:

@@ -187,3 +187,39 @@ def test_same_bytes_under_another_hash_seed_and_worker_count() -> None:
     adder = replace(full_adder(), title="t")
     alone, many = (contactlogic.wire(adder, effort=8, workers=k) for k in (1, 3))
     assert dumps(alone) == dumps(many)
+
+
+@pytest.mark.parametrize("stage", ["covers", "best_ladder"])
+def test_stopped_before_the_search_there_is_a_plain_network(
+    stage: str, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    from contactlogic import synthesis
+
+    plain = synthesis.covers
+
+    def stop(*arguments: object, **options: object) -> object:
+        if options.get("seconds") == 0.0:  # what is done once stopped
+            return plain(*arguments, **options)  # type: ignore[arg-type]
+        raise KeyboardInterrupt
+
+    monkeypatch.setattr(synthesis, stage, stop)
+    result = synthesis.wire(full_adder(), effort=1)
+    assert result.interrupted
+    assert [design.form for design in result.designs] == ["ladder", "bridge"]
+    for design in result.designs:
+        assert contactlogic.verify(design, result.job).ok
+
+
+def test_budgets_that_nothing_keeps_are_refused_before_any_search(
+    monkeypatch: pytest.MonkeyPatch,
+) -> None:
+    from contactlogic import synthesis
+
+    def fail(*_: object, **__: object) -> None:
+        raise AssertionError("a search was begun")
+
+    monkeypatch.setattr(synthesis, "covers", fail)
+    asked = job(2, Target(2, 0b0110), limits=Limits(poles={"A": 0}))
+    for repeaters in (False, True):
+        with pytest.raises(LimitError, match=r"A may use 0 poles; every network needs at least 1"):
+            synthesis.wire(asked, repeaters=repeaters)
