@@ -50,9 +50,6 @@ def page(
     buy: Buy = None,
     coil_volts: CoilVolts = None,
     no_parallel: NoParallel = False,
-    per_terminal: Annotated[
-        int, typer.Option(min=2, max=9, metavar="N", help="Most wires on a terminal, 2 or more.")
-    ] = 2,
     quiet: Annotated[bool, typer.Option("--quiet", "-q", help="Print errors only.")] = False,
     form: Annotated[Forms, typer.Option(help="Which form or forms.")] = Forms.both,
     seed: Annotated[int, typer.Option(min=0, help="Of the search for a job's wiring.")] = 0,
@@ -71,7 +68,7 @@ def page(
         typer.Option(metavar="off|free", help="What loads do in rows that a .csv or .xlsx lacks."),
     ] = None,
 ) -> None:
-    """Write one page for the browser: all papers, hazards, faults, and drawings that move."""
+    """Write one page for the browser: all papers, hazards, faults, test plan, live drawings."""
     from contactlogic.cli import paging
     from contactlogic.cli.buying import Asked
 
@@ -86,7 +83,6 @@ def page(
             asked=Asked(
                 parts, spares, coil_volts, not no_parallel, tuple(have or ()), tuple(buy or ())
             ),
-            per_terminal=per_terminal,
             quiet=quiet,
             form=form.value,
             seed=seed,

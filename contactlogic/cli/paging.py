@@ -35,7 +35,6 @@ class Request:
     out: Path | None = None
     force: bool = False
     asked: Asked = field(default_factory=Asked)
-    per_terminal: int = 2
     quiet: bool = False
     form: Forms = "both"
     seed: int = 0
@@ -77,7 +76,6 @@ def run(request: Request) -> bool:
             design,
             result.job,
             repeaters=result.repeaters,
-            per_terminal=request.per_terminal,
             bought=bought_for(schedules[index]) if schedules else None,
         )
         for index, design in enumerate(result.designs)
@@ -185,8 +183,21 @@ def _faults(wires: WireList, seen: Subject) -> str:
     return faults_markdown(study_faults(panel, wanted_of(panel, seen.job, seen.repeaters)))
 
 
+def _plan(wires: WireList, seen: Subject) -> str:
+    from contactlogic.commission import plan_test
+    from contactlogic.report.commissioning import commissioning_sheet
+    from contactlogic.report.panels import panel_of_design
+    from contactlogic.report.wiring import design_name
+
+    panel = panel_of_design(wires.design, seen.job, seen.repeaters)
+    plan = plan_test(panel, seen.job.listed)
+    name = design_name(wires.design, seen.job)
+    return commissioning_sheet(plan, panel, seen.job, name).partition("\n")[2]
+
+
 _STUDIES: Sequence[tuple[str, Callable[[WireList, Subject], str]]] = (
     ("Wires to tick off", _ticks),
     ("Hazards", _hazards),
     ("Single faults", _faults),
+    ("Commissioning sheet", _plan),
 )

@@ -17,7 +17,10 @@ if TYPE_CHECKING:
 
 __all__ = ["Part", "html", "parts"]
 
-_RULES = ("table", "heading", "list", "fence", "emphasis", "backticks", "escape", "newline")
+_RULES = (
+    *("table", "heading", "list", "fence"),
+    *("emphasis", "backticks", "escape", "entity", "newline"),
+)
 _LONG = 40  # rows of a table from which it scrolls on the screen
 
 

@@ -45,9 +45,18 @@ def test_a_design_and_its_job_with_everything() -> None:
     assert done.exit_code == 0, done.output
     assert done.stdout == "written: all.html\n"
     text = Path("all.html").read_text()
-    for heading in ("Live drawing", "Wires to tick off", "Hazards", "Single faults", "Purchase"):
+    for heading in (
+        "Live drawing",
+        "Wires to tick off",
+        "Hazards",
+        "Single faults",
+        "Purchase",
+        "1. Dead",
+    ):
         assert f">{heading}</h" in text, heading
     assert "&lt;b&gt;=1+1" in text
+    assert "☐" in text
+    assert "&amp;#" not in text
     assert "<b>" not in text
 
 

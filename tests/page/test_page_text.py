@@ -158,6 +158,7 @@ def test_the_same_page_twice_is_the_same() -> None:
         ("<http://x.invalid>", "&lt;http://x.invalid&gt;"),
         ("a \\<b\\> \\& \\| c", "a &lt;b&gt; &amp; | c"),
         ("`<b>`", "<code>&lt;b&gt;</code>"),
+        ("&#9744; \\&lt;b\\&gt; &lt;i&gt;", "☐ &amp;lt;b&amp;gt; &lt;i&gt;"),
     ],
 )
 def test_prose_reads_no_markup_but_its_own(text: str, shown: str) -> None:
