@@ -120,6 +120,14 @@ def wire(
     buy: schedule.Buy = None,
     coil_volts: schedule.CoilVolts = None,
     no_parallel: schedule.NoParallel = False,
+    hazard_free: Annotated[
+        bool,
+        typer.Option("--hazard-free", help="No load may drop out or flash while one relay moves."),
+    ] = False,
+    fail_off: Annotated[
+        str | None,
+        typer.Option(metavar="A,B", help="Loads that no single open fault may turn on."),
+    ] = None,
     page: Annotated[
         bool, typer.Option("--page", help="Write report.html too, with drawings that move.")
     ] = False,
@@ -148,6 +156,8 @@ def wire(
             parts, spares, coil_volts, not no_parallel, tuple(have or ()), tuple(buy or ())
         ),
         cheapest=cheapest,
+        hazard_free=hazard_free,
+        fail_off=fail_off,
         loads=loads,
         unlisted=unlisted,
     )
@@ -156,6 +166,11 @@ def wire(
             raise JobFileError("--seconds and --effort exclude each other", hint="give one of them")
         if cheapest and parts is None:
             raise JobFileError("--cheapest needs prices", hint="name a parts list with --parts")
+        if (cheapest, hazard_free, fail_off is not None).count(True) > 1:
+            raise JobFileError(
+                "--cheapest, --hazard-free and --fail-off exclude each other",
+                hint="give one of them",
+            )
         result = wiring.run(request)
         if result.interrupted:
             raise typer.Exit(Status.STOPPED)

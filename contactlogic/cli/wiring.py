@@ -159,9 +159,14 @@ def wired(job: Wirable, search: Search) -> Result:
 
 def _limited(job: Wirable, request: Request) -> Wirable:
     """The job with the budget of `--poles-per-relay` for every relay that has none of its own."""
-    if request.poles_per_relay is None or isinstance(job, PatternJob):
+    if request.poles_per_relay is None:
         return job
-    relays = job.relays if isinstance(job, Job) else job.table.columns
+    if isinstance(job, PatternJob):
+        from contactlogic.sequence.pattern import choose_relays
+
+        relays = choose_relays(job.pattern).table.columns
+    else:
+        relays = job.relays if isinstance(job, Job) else job.table.columns
     free = (name for name in relays if name not in job.limits.contacts)
     poles = dict.fromkeys(free, request.poles_per_relay) | dict(job.limits.poles)
     return replace(job, limits=replace(job.limits, poles=poles))

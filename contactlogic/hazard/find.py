@@ -106,14 +106,15 @@ def hazards(
 
 @dataclass(frozen=True)
 class HazardPenalty:
-    """A penalty for `search.goal.Goal`: the hazards of a network, each move counted."""
+    """A penalty for `search.goal.Goal`: the hazards of a network, each move `weight` times."""
 
     moves: Moves
     targets: Mapping[str, Target]
+    weight: int = 1
 
     def __call__(self, network: Network) -> int:
         found = _unsteady(network, self.moves, self.targets, _NONE, ())
-        return sum(rows.bit_count() for *_, rows in found)
+        return self.weight * sum(rows.bit_count() for *_, rows in found)
 
 
 def transit_of(

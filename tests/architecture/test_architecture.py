@@ -24,7 +24,7 @@ LAYERS = (
     {"formula", "job", "network", "design", "terminals"},
     {"check", "minimize", "ladder", "search", "sequence", "hazard", "fault", "commission"},
     {"synthesis"},
-    {"sequencer", "repair", "trace"},
+    {"sequencer", "hazardfree", "failoff", "repair", "trace"},
     {"purchase"},
     {"draw", "report"},
     {"page"},
