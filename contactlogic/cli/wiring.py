@@ -13,6 +13,7 @@ from typing import TYPE_CHECKING
 from contactlogic.cli.buying import Asked, priced, priced_text
 from contactlogic.cli.jobs import Wirable, wirable_job
 from contactlogic.design import Result
+from contactlogic.errors import JobFileError, Place
 from contactlogic.job.model import Job, PatternJob
 
 if TYPE_CHECKING:
@@ -49,6 +50,8 @@ class Request:
     page: bool = False
     buying: Asked = field(default_factory=Asked)
     cheapest: bool = False
+    hazard_free: bool = False
+    fail_off: str | None = None
     loads: str | None = None
     unlisted: str | None = None
     began: float = field(default_factory=monotonic)
@@ -80,7 +83,7 @@ def run(request: Request) -> Result:
             watch,
             keep_back=papers_time(request),
         )
-        found = priced(job, search, wired, request.buying, cheapest=request.cheapest)
+        found = priced(job, search, _wirer(request), request.buying, cheapest=request.cheapest)
         result = found.result
     if request.json:
         from contactlogic.report.designfile import dumps
@@ -145,6 +148,32 @@ def papers_time(request: Request) -> Callable[[int], float] | None:
     forms = 2 if request.form == "both" else 1
     # the bridge of a crowded network is drawn with ever more crossings
     return lambda poles: forms * (_PAPERS + _A_POLE * poles + _A_PAIR * poles**2)
+
+
+def _wirer(request: Request) -> Callable[[Wirable, Search], Result]:
+    """What wires the job: the plain search, or one that keeps to what was asked beside."""
+    if not (request.hazard_free or request.fail_off):
+        return wired
+
+    def keeping(job: Wirable, search: Search) -> Result:
+        if not isinstance(job, Job):
+            option = "--hazard-free" if request.hazard_free else "--fail-off"
+            raise JobFileError(
+                f"{option} is for jobs with a table or formulas",
+                place=Place(file=job.file),
+                hint="contactlogic hazards and faults judge the wiring of a sequence",
+            )
+        if request.hazard_free:
+            from contactlogic.hazardfree import wire_hazard_free
+
+            return wire_hazard_free(job, search)
+        from contactlogic.cli.faulting import split_loads
+        from contactlogic.failoff import wire_fail_off
+
+        known = tuple(load.name for load in job.loads)
+        return wire_fail_off(job, search, split_loads(request.fail_off, known))
+
+    return keeping
 
 
 def wired(job: Wirable, search: Search) -> Result:
