@@ -26,6 +26,7 @@ __all__ = ["Facts", "scene_text"]
 _EDGE = 26.0
 _HEAD, _FOOT = 62.0, 54.0
 _LEAST = 430.0  # width of a sheet
+_MANY = 16  # columns whose names fill a line
 _GREY = "#8a8a8a"
 
 Style = dict[str, str]
@@ -238,6 +239,8 @@ class _Sheet:
         self._write((_EDGE, 35), self._verdict(), 9, bold=True)
         names = " ".join(shorten(name, 60, 8) for name in self.columns)
         text = f"Digits of a state: {names} (1 operated)"
+        if len(self.columns) > _MANY:  # a long line is cut at its end
+            text = f"Digits of a state, 1 operated: {names}"
         if len(self.scene.states) < self.recovery.states:
             text = (
                 f"{len(self.scene.states)} of {self.recovery.states} states drawn: the cycle, "
