@@ -37,6 +37,7 @@ where a user waits for the whole job no longer than for the program to start."""
 
 _CEILING = 600.0  # seconds for covers and ladder where only an effort is given
 _CONFLICTS = 2000  # of the proof, for each window of effort
+_SMALL_CONFLICTS = 15_000  # of the proof with the least effort: half a second
 _COVER_SHARE = 0.3  # of the time goes to covers at most, shared out evenly over the loads
 _LADDER_SHARE = 0.4
 _LEAST_SHARE = 0.05  # goes to the search, however long the papers will take
@@ -132,8 +133,11 @@ def synthesise(
             `starts` alone.
     """
     seconds, effort, seed = search.seconds, search.effort, search.seed
+    conflicts = _CONFLICTS * (effort or 0)
     if seconds is None and effort is None:
-        effort = SMALL_EFFORT if len(job.relays) <= _SMALL_RELAYS else EFFORT
+        small = len(job.relays) <= _SMALL_RELAYS
+        effort = SMALL_EFFORT if small else EFFORT
+        conflicts = _SMALL_CONFLICTS if small else _CONFLICTS * EFFORT
     deadline = monotonic() + (_CEILING if seconds is None else seconds)
     forms = search.forms
     refuse_at_once(job, search.repeaters)
@@ -173,7 +177,7 @@ def synthesise(
         seconds=None if seconds is None else max(0.0, deadline - monotonic()),
         effort=effort,
         # the fewest poles are not what a search for the price is after
-        conflicts=0 if search.price is not None else _CONFLICTS * (effort or 0),
+        conflicts=0 if search.price is not None else conflicts,
         seed=seed,
         workers=search.workers,
         at_least=_relays_that_matter(job),
