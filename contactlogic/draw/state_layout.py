@@ -83,9 +83,9 @@ class _Layouter:
         } | scene.trapped
 
     def layout(self) -> Layout:
-        placed = self._place()
-        boxes = {state: self._box(state, at) for state, at in placed.at.items()}
-        plates = [self._plate(k, placed) for k in range(len(self.sizes))]
+        placed, boxes, plates = self._stand(roomy=False)
+        if any(plate and _meet(plate, box) for plate in plates for box in boxes.values()):
+            placed, boxes, plates = self._stand(roomy=True)
         arrows = self._arrows(placed, boxes, [plate for plate in plates if plate])
         points = [p for arrow in arrows for p in arrow.curve.samples()]
         for box in [*boxes.values(), *(plate for plate in plates if plate)]:
@@ -102,7 +102,14 @@ class _Layouter:
             max(p[1] for p in points) + y + margin,
         )
 
-    def _place(self) -> Placed[int]:
+    def _stand(self, roomy: bool) -> tuple[Placed[int], dict[int, Box], list[Box | None]]:
+        """Where states and plates stand."""
+        placed = self._place(roomy)
+        boxes = {state: self._box(state, at) for state, at in placed.at.items()}
+        return placed, boxes, [self._plate(k, placed) for k in range(len(self.sizes))]
+
+    def _place(self, roomy: bool) -> Placed[int]:
+        """Positions; `roomy` keeps the corners of single states' plates free too."""
         islands = []
         for group, layers, (wide, tall) in zip(
             self.scene.groups, self.scene.layers, self.sizes, strict=True
@@ -110,6 +117,8 @@ class _Layouter:
             beside = self._below(group) + tall  # of a single state's plate
             single = len(group.states) == 1
             room = (beside + self.half_height + 8) / self.y_unit
+            if single and roomy:
+                room = math.hypot((wide / 2 + self.half_width + _DOUBLE + 4) / self.x_unit, room)
             if not single:  # whichever way the ring is turned
                 room = math.hypot(
                     (wide / 2 + self.half_width + _DOUBLE + 4) / self.x_unit,
@@ -220,6 +229,14 @@ def _plate_size(plate: Sequence[str]) -> tuple[float, float]:
         return 0.0, 0.0
     wide = max(text_width(line, PLATE_SIZE, True) for line in plate)
     return wide + 12, (PLATE_SIZE + 2) * len(plate) + 5
+
+
+def _meet(one: Box, other: Box) -> bool:
+    """Whether two boxes overlap."""
+    return (
+        abs(one.x - other.x) < one.half_width + other.half_width
+        and abs(one.y - other.y) < one.half_height + other.half_height
+    )
 
 
 def _moved(box: Box, x: float, y: float) -> Box:

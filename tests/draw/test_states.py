@@ -11,7 +11,7 @@ from pathlib import Path
 
 import pytest
 from draw.sequencers import Sequencer, counter, cross_coupled, from_tables, holding, ring
-from hypothesis import given, settings
+from hypothesis import example, given, settings
 from hypothesis import strategies as st
 
 from contactlogic.draw import state_graph
@@ -110,6 +110,7 @@ def test_nothing_stands_on_anything_else(name: str) -> None:
 
 
 @given(tables=st.lists(st.integers(0, 2**16 - 1), min_size=4, max_size=4), slow=st.booleans())
+@example(tables=[65, 192, 207, 269], slow=False)  # a state at the corner of a plate
 @settings(max_examples=25, deadline=None)
 def test_any_drives_are_drawn_whole_and_apart(tables: list[int], slow: bool) -> None:
     sequencer = from_tables(tables, slow)
