@@ -20,18 +20,23 @@ _JOINT = 300  # pairs of a row and a look up to which both are chosen at once
 _EFFORT = 20.0  # deterministic seconds of the engine, for each program
 
 
-def fewest_rows(count: int, shown: Sequence[tuple[int, ...]]) -> tuple[list[int], int]:
+def fewest_rows(
+    count: int, shown: Sequence[tuple[int, ...]], *, proved: bool = True
+) -> tuple[list[int], int]:
     """Rows that show every fault at some look, and how many are needed at least (proved).
 
     Args:
         count: how many rows there are.
         shown: for each fault the rows that show it, as bits: first without any look, then at each
             look.  Every fault is shown in some row.
+        proved: False for a good choice in little time (greedy; Chvatal 1979) with no proof.
     """
     needs = _least_sets({reduce(or_, tables) for tables in shown})
     if not needs:
         return [], 0
     offers = _columns(count, needs)
+    if not proved:
+        return _greedy(needs, offers), 1
     program = Program(seed=0, effort=_EFFORT)
     used = {row: program.binary() for row in offers}
     for need in needs:

@@ -139,7 +139,9 @@ def plan_test(panel: Panel, listed: int, *, seed: int = 0) -> TestPlan:
 
     def rows_alone() -> dict[int, tuple[int, ...]]:
         nonlocal at_least
-        rows, at_least = fewest_rows(len(watched.rows), list(watched.seen().values()))
+        rows, at_least = fewest_rows(
+            len(watched.rows), list(watched.seen().values()), proved=exhaustive
+        )
         return dict.fromkeys(rows, whole)
 
     least_looks = False

@@ -24,8 +24,8 @@ def plan_text(plan: TestPlan) -> str:
     """Lines for the screen."""
     lines = [_summary(plan)]
     for number, step in enumerate(plan.steps, start=1):
-        looks = _looks(step.looks) or "that the fuse holds"
-        lines.append(f"  {number}. {_change(step)}: look at {looks}")
+        looks = f"look at {_looks(step.looks)}" if step.looks else "see that the fuse holds"
+        lines.append(f"  {number}. {_change(step)}: {looks}")
     lines += [f"not shown by any listed row: {_unseen(one, plan)}" for one in plan.unseen]
     return "\n".join(map(_flat, lines)) + "\n"
 
