@@ -15,6 +15,7 @@ from contactlogic.search.goal import Goal
 from contactlogic.search.mesh import Mesh, from_network, live_rows, to_network
 from contactlogic.search.portfolio import Errand, Progress, Proving, explore
 from contactlogic.search.problem import Problem
+from contactlogic.search.shares import least_at_once
 from contactlogic.truth import Target, all_rows
 
 __all__ = ["Best", "Task", "best_networks"]
@@ -125,7 +126,7 @@ def best_networks(
             _named(smallest, task, loads) if kept else None,
             conflicts,
             None if kept else len(smallest.poles) + _MORE_FOR_BUDGETS,
-            at_least,
+            max(at_least, least_at_once(problem)),
         ),
         seconds=seconds,
         effort=effort,

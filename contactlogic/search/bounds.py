@@ -24,6 +24,7 @@ __all__ = [
     "least_by_load",
     "least_poles",
     "least_together",
+    "needed_kinds",
     "private_rows",
     "total",
 ]
@@ -62,10 +63,11 @@ def least_by_kind(problem: Problem, grouping: Grouping) -> dict[Kind, int]:
     i is operated in the row where the load is on, and a break otherwise; hence the count for
     separate makes and breaks.
     """
-    return _needed(problem, grouping.targets)
+    return needed_kinds(problem, grouping.targets)
 
 
-def _needed(problem: Problem, targets: Collection[Target]) -> dict[Kind, int]:
+def needed_kinds(problem: Problem, targets: Collection[Target]) -> dict[Kind, int]:
+    """Least poles of each kind that these loads show by themselves: as in `least_by_kind`."""
     least = {}
     for kind in problem.kinds:
         forms = {"C": (True, False), "A": (True,), "B": (False,)}[kind.form]
@@ -76,7 +78,7 @@ def _needed(problem: Problem, targets: Collection[Target]) -> dict[Kind, int]:
 
 
 def _single(problem: Problem, targets: Collection[Target]) -> Iterator[Demand]:
-    least = _needed(problem, targets)
+    least = needed_kinds(problem, targets)
     yield Demand((1,) * len(least), sum(least.values()))
 
 

@@ -21,7 +21,7 @@ from contactlogic.search.encoding import Ends
 from contactlogic.search.mesh import SUPPLY, Mesh
 from contactlogic.truth import Target, all_rows, literal
 
-__all__ = ["stand_in"]
+__all__ = ["bystander", "stand_in"]
 
 _Touching = dict[int, list[tuple[int, int]]]
 _Rows = Mapping[int, int]  # by net, rows in which it has some property
@@ -73,6 +73,31 @@ def stand_in(
         made = _pole(state, relay, n, random, relay in single, taken)
         if made is not None:
             return (made,)
+    return None
+
+
+def bystander(
+    mesh: Mesh, targets: Sequence[Target], random: Random, *, single: Collection[int] = ()
+) -> Ends | None:
+    """A random pole that nothing needs and that does no harm; None if none was met.
+
+    Added, it gives a walk room: two others may now become one.
+    """
+    n = targets[0].n
+    touching = _touching(mesh.poles, mesh.nets(), n)
+    off: dict[int, int] = {}
+    for feed, target in zip(mesh.feeds, targets, strict=True):
+        if feed is not None and target.off:
+            off[feed] = off.get(feed, 0) | target.off
+    state = _State(_spread(touching, {SUPPLY: all_rows(n)}), _spread(touching, off), [])
+    for _ in range(_TRIES):
+        relay, common = random.randrange(n), random.choice(state.nets)
+        throws = [_spare(state, common, literal(n, relay, make), random) for make in (True, False)]
+        if relay in single:
+            throws[random.randrange(2)] = None
+        make_net, break_net = throws
+        if make_net != break_net:
+            return Ends(relay, common, make_net, break_net)
     return None
 
 

@@ -14,7 +14,7 @@ Every network that `Walk` holds has been checked over all rows by bit-parallel c
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Sequence
+from collections.abc import Collection, Iterator, Sequence
 from dataclasses import dataclass
 from itertools import count
 from random import Random
@@ -23,7 +23,7 @@ from contactlogic.search.encoding import Ends, Row
 from contactlogic.search.goal import Goal
 from contactlogic.search.mesh import SUPPLY, Mesh, live_rows, trim
 from contactlogic.search.resynthesis import WindowProblem, resynthesise
-from contactlogic.search.swaps import stand_in
+from contactlogic.search.swaps import bystander, stand_in
 
 __all__ = ["Found", "Walk", "wander"]
 
@@ -34,6 +34,7 @@ _SIGN_OF_LIFE = 10  # windows between signs of life
 _DEARER = 0.25  # of the windows with as many poles are tried with one more where the price counts
 _DRIFT = 30  # poles replaced one by one before each window
 _DRIFT_JUDGED = 5  # the same where a judgement from outside is to be asked every time
+_DETOUR = 0.5  # how often a walk takes a pole more before it drifts
 _PAIRS = 4  # pairs of poles looked at after each of them
 _TRIES = 6  # different answers looked at where a filter may reject them
 
@@ -99,6 +100,8 @@ class Walk:
     def _drift(self) -> None:
         goal = self.goal
         judged = goal.penalty is not None or goal.price is not None
+        if len(self.here.poles) <= len(self.best.poles) and self.random.random() < _DETOUR:
+            self._detour()
         for _ in range(_DRIFT_JUDGED if judged else _DRIFT):
             if len(self.here.poles) < 2:
                 break
@@ -108,11 +111,23 @@ class Walk:
                         self._stand_in(self._choose(2))
         self._keep()
 
+    def _detour(self) -> None:
+        """Take a pole more than the best has, which nothing needs as yet."""
+        mesh, goal = self.here, self.goal
+        more = bystander(mesh, goal.targets, self.random, single=self._single())
+        if more is None:
+            return
+        candidate = Mesh((*mesh.poles, more), mesh.feeds)
+        if goal.accepts(candidate) and goal.weight(candidate) <= goal.weight(mesh):
+            self.here = candidate
+
+    def _single(self) -> Collection[int]:
+        return range(self.goal.n) if self.goal.singly else self.goal.separate.keys()
+
     def _stand_in(self, out: Sequence[int]) -> bool:
         """Whether one pole, or none, could take the place of these."""
         mesh, goal = self.here, self.goal
-        single = range(goal.n) if goal.singly else goal.separate.keys()
-        made = stand_in(mesh, out, goal.targets, self.random, single=single)
+        made = stand_in(mesh, out, goal.targets, self.random, single=self._single())
         if made is None:
             return False
         rest = [pole for k, pole in enumerate(mesh.poles) if k not in out]

@@ -11,7 +11,7 @@ from oracles import behaviour
 from contactlogic.search.diagrams import diagram
 from contactlogic.search.encoding import Ends
 from contactlogic.search.mesh import Mesh, to_network
-from contactlogic.search.swaps import stand_in
+from contactlogic.search.swaps import bystander, stand_in
 from contactlogic.truth import Target
 
 RELAYS = ("A", "B", "C")
@@ -63,3 +63,14 @@ def test_a_pole_stands_in_just_where_one_can(seed: int, single: bool) -> None:
 def test_a_pole_that_nothing_needs_goes() -> None:
     mesh = Mesh((Ends(0, 0, 1, None), Ends(0, 0, 1, 2)), (1,))
     assert stand_in(mesh, [1], [Target(3, 0b10101010)], Random(1)) == ()
+
+
+@pytest.mark.parametrize("seed", range(20))
+def test_a_bystander_does_no_harm(seed: int) -> None:
+    random = Random(seed)
+    mesh, targets = some(random)
+    for _ in range(5):
+        more = bystander(mesh, targets, random, single=() if seed % 2 else range(3))
+        if more is not None:
+            assert works(Mesh((*mesh.poles, more), mesh.feeds), targets)
+            assert seed % 2 or None in (more.make, more.break_)
