@@ -39,7 +39,7 @@ def test_a_pole_stands_in_just_where_one_can(seed: int, single: bool) -> None:
     if len(mesh.poles) < 2:
         return
     assert works(mesh, targets)
-    for _ in range(12):
+    for _ in range(6):
         out = random.sample(range(len(mesh.poles)), random.choice((1, 2)))
         rest = [pole for k, pole in enumerate(mesh.poles) if k not in out]
         taken = [mesh.poles[k] for k in out]
