@@ -8,7 +8,7 @@ twice more, row by row by `check` and by exhausting the state space of its conta
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field, replace
+from dataclasses import replace
 
 from contactlogic.design import Design, Result
 from contactlogic.errors import LimitError, Place, TableError
@@ -24,6 +24,7 @@ from contactlogic.sequence.starting import needed_relays, start
 from contactlogic.sequence.steps import Expansion
 from contactlogic.sequence.transit import Transit, transits
 from contactlogic.sequence.wants import drive_targets, load_targets
+from contactlogic.sequenced import SequencerResult
 from contactlogic.synthesis import Search, finish, synthesise
 from contactlogic.truth import Target
 
@@ -42,25 +43,6 @@ MOST_RELAYS = 24
 
 _SEARCHED = 10  # relays and inputs up to which the wiring is searched, not only built
 _FEW = 5  # up to here the search also begins with wiring that comes home by the shortest way
-
-
-@dataclass(frozen=True)
-class SequencerResult(Result):
-    """A result with what was proved of it as a sequencer.
-
-    Args:
-        expansion: the one-relay steps.
-        timing: which relays are slow.
-        recoveries: of each design, in the order of `designs`.
-        transits: gaps and flashes at coils while a relay moves, of each design.
-        notes: what was chosen or added: relays of a pattern, step orders, memory relays.
-    """
-
-    expansion: Expansion = field(kw_only=True)
-    timing: Timing = field(kw_only=True)
-    recoveries: tuple[Recovery, ...] = ()
-    transits: tuple[tuple[Transit, ...], ...] = ()
-    notes: tuple[str, ...] = ()
 
 
 def table_job(job: SequenceJob, expansion: Expansion) -> Job:

@@ -31,7 +31,7 @@ __all__ = ["EFFORT", "Forms", "Search", "finish", "synthesise", "wire"]
 
 Forms = Literal["ladder", "bridge", "both"]
 
-EFFORT, SMALL_EFFORT = 40, 3
+EFFORT, SMALL_EFFORT = 40, 6
 """Windows for each walker where neither effort nor seconds are given; the second with few relays,
 where a user waits for the whole job no longer than for the program to start."""
 

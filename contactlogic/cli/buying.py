@@ -164,10 +164,10 @@ def priced(
 
 def priced_text(found: Priced, *, width: int | None) -> str:
     """What is bought, for the screen; empty if nothing is."""
-    from contactlogic.report.purchase import cheapest_text, purchase_text
-
     if not found.schedules:
         return ""
+    from contactlogic.report.purchase import cheapest_text, purchase_text
+
     text = purchase_text(found.schedules, found.result.job.title, width=width)
     if found.cheapest is not None:
         text = cheapest_text(found.cheapest, width=width) + "\n" + text

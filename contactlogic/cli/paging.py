@@ -138,7 +138,7 @@ def _schedules(found: _Found, asked: Asked) -> list[Schedule]:
 def _pictures(result: Result, index: int) -> dict[str, bytes]:
     """Chart and states of a sequencer."""
     from contactlogic.report.sequencer import pictures, sequence_files
-    from contactlogic.sequencer import SequencerResult
+    from contactlogic.sequenced import SequencerResult
 
     if not isinstance(result, SequencerResult):
         return {}

@@ -24,7 +24,7 @@ from contactlogic.page import prose
 from contactlogic.page.live import live_model, numbers_of
 from contactlogic.report.text import one_line
 from contactlogic.sequence.steps import Expansion
-from contactlogic.sequencer import SequencerResult
+from contactlogic.sequenced import SequencerResult
 from contactlogic.terminals import RETURN
 
 if TYPE_CHECKING:

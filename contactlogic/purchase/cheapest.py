@@ -24,7 +24,7 @@ from contactlogic.purchase.needs import needs_of
 from contactlogic.purchase.parts import Part, PartsList
 from contactlogic.purchase.prices import Prices, least_price, wired_apart
 from contactlogic.purchase.schedule import Drawer, Schedule, schedule_of
-from contactlogic.sequencer import SequencerResult
+from contactlogic.sequenced import SequencerResult
 from contactlogic.synthesis import EFFORT, Search
 
 __all__ = ["Cheapest", "Offer", "cheapest"]

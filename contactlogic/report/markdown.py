@@ -27,10 +27,9 @@ from contactlogic.report.phrases import (
     run_line,
     saving,
 )
-from contactlogic.report.sequencer import expansion_lines, report_section
 from contactlogic.report.text import code, markdown, table_lines
 from contactlogic.report.wiring import design_name
-from contactlogic.sequencer import SequencerResult
+from contactlogic.sequenced import SequencerResult
 from contactlogic.truth import MAX_INPUTS, rows_of, settings
 
 __all__ = ["report"]
@@ -68,11 +67,14 @@ def report(
     lines += _asked(job)
     sequencer = result if isinstance(result, SequencerResult) else None
     if sequencer is not None:
+        from contactlogic.report.sequencer import expansion_lines, report_section
+
         steps = [*expansion_lines(sequencer), *(f"note: {note}" for note in sequencer.notes)]
         lines += ["## Expanded list", "", "```text", *steps, "```", ""]
     for index, (design, known) in enumerate(zip(result.designs, facts, strict=True)):
         lines += _design(design, result, known, lists[index])
-        lines += [] if sequencer is None else report_section(sequencer, index)
+        if sequencer is not None:
+            lines += report_section(sequencer, index)
     lines += [*more, "## Cautions", "", *(f"- {caution}" for caution in CAUTIONS)]
     return "\n".join(lines) + "\n"
 

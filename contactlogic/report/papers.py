@@ -4,19 +4,21 @@ from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 from contactlogic.design import Result
 from contactlogic.draw.sheet import Sheet
 from contactlogic.errors import RenderError
-from contactlogic.purchase.cheapest import Cheapest
-from contactlogic.purchase.schedule import Schedule
-from contactlogic.report import purchase
 from contactlogic.report.bench import bench_files, bought_for, wire_list
 from contactlogic.report.facts import Facts
 from contactlogic.report.markdown import report
 from contactlogic.report.text import table_lines
 from contactlogic.report.wiring import schedule_csv
-from contactlogic.sequencer import SequencerResult
+from contactlogic.sequenced import SequencerResult
+
+if TYPE_CHECKING:
+    from contactlogic.purchase.cheapest import Cheapest
+    from contactlogic.purchase.schedule import Schedule
 
 __all__ = ["Papers", "papers", "purchase_lines"]
 
@@ -85,6 +87,8 @@ def papers(
         files |= {f"{form}/{name}": data for name, data in bench_files(lists[index]).items()}
         files[f"{form}/schedule.csv"] = schedule_csv(design, result.job).encode()
         if schedules:
+            from contactlogic.report import purchase
+
             title = result.job.title
             files[f"{form}/schedule.csv"] = purchase.schedule_csv(schedules[index], title).encode()
             files[f"{form}/purchase.csv"] = purchase.purchase_csv(schedules[index], title).encode()
@@ -101,6 +105,8 @@ def purchase_lines(schedules: Sequence[Schedule], cheapest: Cheapest | None) -> 
     """The report's section on what to buy, empty if nothing is bought."""
     if not schedules:
         return []
+    from contactlogic.report import purchase
+
     lines = ["## Purchase", ""]
     if cheapest is not None:
         lines += [*table_lines(purchase.OFFERED, purchase.offered(cheapest)), ""]

@@ -14,7 +14,7 @@ from contactlogic.report.recovery import recovery_text, transit_line, verdict_li
 from contactlogic.sequence.prove import network_motion
 from contactlogic.sequence.record import recovery_json
 from contactlogic.sequence.wants import ways
-from contactlogic.sequencer import SequencerResult
+from contactlogic.sequenced import SequencerResult
 
 __all__ = ["expansion_lines", "pictures", "recovery_lines", "report_section", "sequence_files"]
 

@@ -23,10 +23,9 @@ from contactlogic.report.phrases import (
     run_line,
     saving,
 )
-from contactlogic.report.sequencer import expansion_lines, recovery_lines
 from contactlogic.report.text import one_line
 from contactlogic.report.wiring import design_name
-from contactlogic.sequencer import SequencerResult
+from contactlogic.sequenced import SequencerResult
 
 __all__ = ["summary"]
 
@@ -44,6 +43,8 @@ def summary(
     parts = [_at_rest(result, facts)] if result.designs else []
     sequencer = result if isinstance(result, SequencerResult) else None
     if sequencer is not None:
+        from contactlogic.report.sequencer import expansion_lines, recovery_lines
+
         parts.append([*expansion_lines(sequencer), *(f"note: {n}" for n in sequencer.notes)])
     for index, (design, known) in enumerate(zip(result.designs, facts, strict=True)):
         more = [] if sequencer is None else list(recovery_lines(sequencer, index))

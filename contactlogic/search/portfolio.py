@@ -25,6 +25,7 @@ from contactlogic.search.windows import Found, wander
 __all__ = ["Errand", "Progress", "Proving", "Standing", "explore"]
 
 _WALKERS = 2  # for each errand when running by effort
+_SHORT = 10  # windows below which one walker is enough: a second would take longer to start
 _TICK = 0.2  # seconds between looks at the clock
 _PROVING_SHARE = 0.5  # of the time goes to the proof at most
 
@@ -171,7 +172,10 @@ class _Run:
         By effort, an errand that starts at the proved bound needs but one, to settle ties.
         """
         count = len(self.errands)
-        rounds = _WALKERS if self.effort is not None else max(1, -(-workers // max(1, count)))
+        if self.effort is None:
+            rounds = max(1, -(-workers // max(1, count)))
+        else:
+            rounds = _WALKERS if self.effort >= _SHORT else 1
         return [
             _Walker(errand, 1000 * seed + count * turn + errand)
             for turn in range(rounds)

@@ -24,7 +24,7 @@ LAYERS = (
     {"formula", "job", "network", "design", "terminals"},
     {"check", "minimize", "ladder", "search", "sequence", "hazard", "fault", "commission"},
     {"synthesis"},
-    {"sequencer", "hazardfree", "failoff", "repair", "trace"},
+    {"sequenced", "sequencer", "hazardfree", "failoff", "repair", "trace"},
     {"purchase"},
     {"draw", "report"},
     {"page"},
@@ -51,6 +51,7 @@ ENGINES = (
     "markdown_it",
     "matplotlib",
     "openpyxl",
+    "xlsxwriter",
     "quantiphy",
     "rkm_codes",
 )

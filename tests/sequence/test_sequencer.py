@@ -19,7 +19,8 @@ from contactlogic.job.model import Limits, PatternJob, SequenceJob
 from contactlogic.job.sequence import Pattern, Row, SequenceTable, Timing
 from contactlogic.network import Network
 from contactlogic.sequence.pattern import choose_relays
-from contactlogic.sequencer import MOST_RELAYS, SequencerResult, wire_sequence
+from contactlogic.sequenced import SequencerResult
+from contactlogic.sequencer import MOST_RELAYS, wire_sequence
 from contactlogic.synthesis import Search
 
 NAMES = ("A", "B", "C", "D")
