@@ -15,13 +15,14 @@ import os
 import pickle
 import subprocess
 import sys
-from collections.abc import Callable, Iterator
+from collections.abc import Callable, Iterator, Sequence
+from contextlib import suppress
 from dataclasses import dataclass
 from queue import Queue
 from threading import Thread
-from typing import BinaryIO, TypeVar
+from typing import BinaryIO, Self, TypeVar
 
-__all__ = ["ChildCrashed", "ChildTimedOut", "Event", "Stream", "run"]
+__all__ = ["ChildCrashed", "ChildTimedOut", "Event", "Spares", "Stream", "run"]
 
 _T = TypeVar("_T")
 
@@ -31,12 +32,19 @@ Inbox = Queue["Event"]
 _MARK = "contactlogic child 1"
 
 # Standard output is kept for the answer: whatever the engine prints there goes to standard error.
+# Modules named beforehand are loaded while the work is still awaited.
 _START = """
-import os, pickle, sys
+import os, pickle, signal, sys
+if {patient}:
+    signal.signal(signal.SIGINT, signal.SIG_IGN)
 answer = os.fdopen(os.dup(1), "wb")
 os.dup2(2, 1)
-sys.path[:], seconds, work = pickle.load(sys.stdin.buffer)
+sys.path[:], modules = pickle.load(sys.stdin.buffer)
+import importlib
+for module in modules:
+    importlib.import_module(module)
 from contactlogic.child import {serve}
+seconds, work = pickle.load(sys.stdin.buffer)
 {serve}(seconds, work, answer)
 """
 
@@ -50,7 +58,14 @@ class ChildCrashed(Exception):
 
 
 def _command(serve: str) -> list[str]:
-    return [sys.executable, "-P", "-c", _START.replace("{serve}", serve)]
+    patient = serve == "_serve_stream"  # such a child ignores Ctrl-C: its caller decides
+    script = _START.replace("{serve}", serve).replace("{patient}", str(patient))
+    return [sys.executable, "-P", "-c", script]
+
+
+def _first(modules: Sequence[str] = ()) -> bytes:
+    """What a child must know before it can be given work."""
+    return pickle.dumps((sys.path, tuple(modules)))
 
 
 def run(function: Callable[..., _T], *args: object, seconds: float) -> _T:
@@ -68,7 +83,7 @@ def run(function: Callable[..., _T], *args: object, seconds: float) -> _T:
     try:
         done = subprocess.run(
             _command("_serve"),
-            input=pickle.dumps((sys.path, seconds, work)),
+            input=_first() + pickle.dumps((seconds, work)),
             capture_output=True,
             timeout=seconds,
             check=False,
@@ -113,6 +128,59 @@ class Event:
     failure: str | None = None
 
 
+def _waiting(modules: Sequence[str]) -> subprocess.Popen[bytes]:
+    """A child that loads `modules`, then waits for a stream's work."""
+    process = subprocess.Popen(
+        _command("_serve_stream"),
+        stdin=subprocess.PIPE,
+        stdout=subprocess.PIPE,
+        stderr=subprocess.DEVNULL,
+    )
+    assert process.stdin is not None
+    process.stdin.write(_first(modules))
+    process.stdin.flush()
+    return process
+
+
+class Spares:
+    """Children for streams that start while the caller is still busy; a context.
+
+    Those that are not taken are ended with the context.
+
+    Args:
+        count: how many.
+        modules: what they load beforehand.
+    """
+
+    def __init__(self, count: int, modules: Sequence[str]) -> None:
+        self._idle = [_waiting(modules) for _ in range(count)]
+
+    def take(self) -> subprocess.Popen[bytes] | None:
+        """One of them, None if all are taken or lost."""
+        while self._idle:
+            process = self._idle.pop(0)
+            if process.poll() is None:
+                return process
+            _end(process)
+        return None
+
+    def __enter__(self) -> Self:
+        return self
+
+    def __exit__(self, *_: object) -> None:
+        while self._idle:
+            _end(self._idle.pop())
+
+
+def _end(process: subprocess.Popen[bytes]) -> None:
+    process.kill()
+    process.wait()
+    for pipe in (process.stdin, process.stdout):
+        if pipe is not None:
+            with suppress(OSError):  # what was not sent yet is lost with its reader
+                pipe.close()
+
+
 class Stream:
     """A generator function worked through in a child; its values arrive in `inbox` as `Event`s.
 
@@ -123,19 +191,21 @@ class Stream:
         function: a module's top-level generator function; arguments and values can be pickled.
         inbox: queue that the events of any number of streams go to.
         name: number that tells this stream's events apart.
+        spares: children that are starting already, to take one from.
     """
 
     def __init__(
-        self, function: Callable[..., Iterator[object]], *args: object, inbox: Inbox, name: int
+        self,
+        function: Callable[..., Iterator[object]],
+        *args: object,
+        inbox: Inbox,
+        name: int,
+        spares: Spares | None = None,
     ) -> None:
-        self._process = subprocess.Popen(
-            _command("_serve_stream"),
-            stdin=subprocess.PIPE,
-            stdout=subprocess.PIPE,
-            stderr=subprocess.DEVNULL,
-        )
+        waiting = None if spares is None else spares.take()
+        self._process = _waiting(()) if waiting is None else waiting
         assert self._process.stdin is not None
-        pickle.dump((sys.path, 0.0, pickle.dumps((function, args))), self._process.stdin)
+        pickle.dump((0.0, pickle.dumps((function, args))), self._process.stdin)
         self._process.stdin.close()
         self._reader = Thread(target=self._read, args=(inbox, name), daemon=True)
         self._reader.start()
@@ -170,9 +240,6 @@ class Stream:
 
 def _serve_stream(_seconds: float, work: bytes, answer: BinaryIO) -> None:
     """The child's side of a stream: send each value as it comes."""
-    import signal
-
-    signal.signal(signal.SIGINT, signal.SIG_IGN)
     function, args = pickle.loads(work)
     with answer as out:
         for value in function(*args):

@@ -8,12 +8,13 @@ what built it.  A network that fails its proof is never returned.
 from __future__ import annotations
 
 from collections.abc import Callable, Mapping, Sequence
+from contextlib import ExitStack
 from dataclasses import dataclass, replace
 from time import monotonic
 from typing import Literal
 
 from contactlogic.check import prove
-from contactlogic.child import ChildCrashed, ChildTimedOut, run
+from contactlogic.child import ChildCrashed, ChildTimedOut, Spares, run
 from contactlogic.design import Bound, Design, Form, LoadStatus, Result
 from contactlogic.errors import ProofFailed
 from contactlogic.job.model import Job
@@ -38,8 +39,9 @@ where a user waits for the whole job no longer than for the program to start."""
 _CEILING = 600.0  # seconds for covers and ladder where only an effort is given
 _CONFLICTS = 2000  # of the proof, for each window of effort
 _SMALL_CONFLICTS = 15_000  # of the proof with the least effort: half a second
+_WALKERS_LOAD = ("contactlogic.search.portfolio", "pysat.solvers")
 _COVER_SHARE = 0.3  # of the time goes to covers at most, shared out evenly over the loads
-_LADDER_SHARE = 0.4
+_LADDER_SHARE, _LADDER_MOST = 0.4, 20.0  # of the time, and seconds: walks improve a ladder faster
 _LEAST_SHARE = 0.05  # goes to the search, however long the papers will take
 _SMALL_RELAYS = 4  # up to here the least effort is the default
 _FEW_RELAYS = 5  # up to here a ladder takes a second or so
@@ -141,49 +143,52 @@ def synthesise(
     deadline = monotonic() + (_CEILING if seconds is None else seconds)
     forms = search.forms
     refuse_at_once(job, search.repeaters)
-    try:
-        found = covered or _covers(job, deadline, seed)
-        if (
-            penalty is None
-            and search.price is None
-            and (shelf := _from_catalogue(job, forms)) is not None
-        ):
-            return _shelved(job, shelf, found)
-        known = list(starts)
-        if covered is None:
-            at_home = job
-            if home is not None:
-                loads = tuple(replace(load, target=home[load.name]) for load in job.loads)
-                at_home = replace(job, loads=loads)
-            narrow = found if home is None else _covers(at_home, deadline, seed)
-            known.insert(0, _ladder(at_home, narrow, deadline, seed, timed=seconds is not None))
-    except KeyboardInterrupt:
-        return _plain(job, search, home)
-    statuses = _statuses(job, found)
-    if search.keep_back is not None:
-        late = deadline - search.keep_back(len(known[0].poles))
-        deadline = max(late, min(deadline, monotonic() + _LEAST_SHARE * (seconds or 0.0)))
-    watch = search.watch
-    best = best_networks(
-        replace(
-            _task(job, search.repeaters),
-            penalty=penalty,
-            blemishes=blemishes,
-            price=search.price,
-            bargain=search.bargain,
-        ),
-        dict.fromkeys(forms, known),
-        forms,
-        seconds=None if seconds is None else max(0.0, deadline - monotonic()),
-        effort=effort,
-        # the fewest poles are not what a search for the price is after
-        conflicts=0 if search.price is not None else conflicts,
-        seed=seed,
-        workers=search.workers,
-        at_least=_relays_that_matter(job),
-        home=home,
-        watch=None if watch is None else lambda progress: watch(forms, progress),
-    )
+    with ExitStack() as ending:
+        try:
+            found = covered or _covers(job, deadline, seed)
+            if (
+                penalty is None
+                and search.price is None
+                and (shelf := _from_catalogue(job, forms)) is not None
+            ):
+                return _shelved(job, shelf, found)
+            spares = ending.enter_context(Spares(len(forms) + 1, _WALKERS_LOAD))
+            known = list(starts)
+            if covered is None:
+                at_home = job
+                if home is not None:
+                    loads = tuple(replace(load, target=home[load.name]) for load in job.loads)
+                    at_home = replace(job, loads=loads)
+                narrow = found if home is None else _covers(at_home, deadline, seed)
+                known.insert(0, _ladder(at_home, narrow, deadline, seed, timed=seconds is not None))
+        except KeyboardInterrupt:
+            return _plain(job, search, home)
+        statuses = _statuses(job, found)
+        if search.keep_back is not None:
+            late = deadline - search.keep_back(len(known[0].poles))
+            deadline = max(late, min(deadline, monotonic() + _LEAST_SHARE * (seconds or 0.0)))
+        watch = search.watch
+        best = best_networks(
+            replace(
+                _task(job, search.repeaters),
+                penalty=penalty,
+                blemishes=blemishes,
+                price=search.price,
+                bargain=search.bargain,
+            ),
+            dict.fromkeys(forms, known),
+            forms,
+            seconds=None if seconds is None else max(0.0, deadline - monotonic()),
+            effort=effort,
+            # the fewest poles are not what a search for the price is after
+            conflicts=0 if search.price is not None else conflicts,
+            seed=seed,
+            workers=search.workers,
+            at_least=_relays_that_matter(job),
+            home=home,
+            watch=None if watch is None else lambda progress: watch(forms, progress),
+            spares=spares,
+        )
     return finish(
         job,
         search,
@@ -309,7 +314,7 @@ def _ladder(
     it leaves then is the plain ladder of the covers.
     """
     task = _ladder_task(job, found)
-    seconds = max(0.3, _LADDER_SHARE * (deadline - monotonic()))
+    seconds = min(_LADDER_MOST, max(0.3, _LADDER_SHARE * (deadline - monotonic())))
     if not timed or len(job.relays) <= _FEW_RELAYS:
         return best_ladder(task, seconds=seconds, seed=seed).network
     try:

@@ -30,6 +30,7 @@ __all__ = ["Ladder", "LadderTask", "best_ladder", "plain_ladder"]
 _TREES = 12  # kept for each load
 _SELECTIONS = 6  # selections of one tree a load that are arranged
 _EFFORT = 4.0  # deterministic seconds of the engine for one arrangement
+_SMALL = 30  # contacts up to which the engine takes milliseconds
 _LARGE = 160  # contacts above which only the most promising plans are arranged
 
 
@@ -151,7 +152,8 @@ def _arranged(
     """Each plan in its best order; None where the engine gave nothing.
 
     A plan whose order as it stands meets the bound of `fewest_poles` needs no engine.  The engine
-    runs in a child process, so that a crash costs no more than the better order.
+    runs in a child process, so that a crash costs no more than the better order; but for plans so
+    small that a child would take longer to start than the engine to answer.
     """
     found: dict[int, Arrangement | None] = {}
     for k, plan in enumerate(plans):
@@ -162,6 +164,9 @@ def _arranged(
     seconds = deadline - monotonic()
     if open_plans and seconds > 0:
         todo = [plans[k] for k in open_plans]
+        if max(sum(contact_count(b.tree) for b in plan.branches) for plan in todo) <= _SMALL:
+            found.update(zip(open_plans, _arrange_all(todo, rules, seed, seconds), strict=True))
+            return [found.get(k) for k in range(len(plans))]
         try:
             orders = run(_arrange_all, todo, rules, seed, 0.8 * seconds, seconds=seconds)
             found.update(zip(open_plans, orders, strict=True))

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Callable, Collection, Mapping, Sequence
 from dataclasses import dataclass, field
 
+from contactlogic.child import Spares
 from contactlogic.design import Form
 from contactlogic.job.model import Objective, SeparateContacts
 from contactlogic.ladder.build import Edge, pair
@@ -80,6 +81,7 @@ def best_networks(
     at_least: int = 0,
     home: Mapping[str, Target] | None = None,
     watch: Callable[[Progress], None] | None = None,
+    spares: Spares | None = None,
 ) -> Best:
     """Improve known networks, and prove how far they can be improved.
 
@@ -87,7 +89,7 @@ def best_networks(
         task: what is wanted.
         known: correct networks to start from, for each form at least one.
         forms: what to search for.
-        seconds, effort, seed, workers, watch: as in `portfolio.explore`.
+        seconds, effort, seed, workers, watch, spares: as in `portfolio.explore`.
         conflicts: budget of the proof when running by effort.
         at_least: a bound known beforehand.
         home: narrower wants, in the order of the task's, that the diagrams to start from are made
@@ -133,6 +135,7 @@ def best_networks(
         seed=seed,
         workers=workers,
         watch=watch,
+        spares=spares,
     )
     networks: dict[Form, Network] = {}
     over: dict[Form, int] = {}

@@ -14,7 +14,7 @@ from dataclasses import dataclass, replace
 from queue import Empty, Queue
 from time import monotonic
 
-from contactlogic.child import Event, Inbox, Stream
+from contactlogic.child import Event, Inbox, Spares, Stream
 from contactlogic.network import Network
 from contactlogic.search.exact import ExactNews, prove
 from contactlogic.search.goal import Goal
@@ -90,6 +90,7 @@ def explore(
     seed: int,
     workers: int,
     watch: Callable[[Progress], None] | None = None,
+    spares: Spares | None = None,
 ) -> Progress:
     """Walk all errands and return where they stand at the end.
 
@@ -101,10 +102,11 @@ def explore(
         seed: walkers derive theirs from it.
         workers: walking processes at a time; the proof has one of its own.
         watch: called now and then with the progress.
+        spares: child processes that are starting already.
 
     Ctrl-C (KeyboardInterrupt) ends the search at once; the result then says `interrupted`.
     """
-    run = _Run(errands, proving, seconds, effort, watch)
+    run = _Run(errands, proving, seconds, effort, watch, spares)
     interrupted = False
     try:
         if proving is not None:
@@ -144,11 +146,13 @@ class _Run:
         seconds: float | None,
         effort: int | None,
         watch: Callable[[Progress], None] | None,
+        spares: Spares | None,
     ) -> None:
         self.errands = errands
         self.seconds = seconds
         self.effort = effort
         self.watch = watch
+        self.spares = spares
         self.start = monotonic()
         self.state = [Standing() for _ in errands]
         self.at_least = proving.at_least if proving else 0
@@ -164,7 +168,7 @@ class _Run:
     def start_proof(self, proving: Proving, conflicts: int | None) -> None:
         name = self._name()
         arguments = (proving.problem, proving.known, conflicts, proving.most)
-        self.proof = (name, Stream(_proof, *arguments, inbox=self.inbox, name=name))
+        self.proof = (name, self._stream(_proof, *arguments, name=name))
 
     def walkers(self, seed: int, workers: int) -> list[_Walker]:
         """Walkers in turn over the errands, each with a seed of its own.
@@ -197,7 +201,12 @@ class _Run:
                 starts = (self.found, *starts)
             arguments = (starts, errand.goal, walker.seed, self.effort, self.at_least)
             name = self._name()
-            self.walks[name] = (walker, Stream(wander, *arguments, inbox=self.inbox, name=name))
+            self.walks[name] = (walker, self._stream(wander, *arguments, name=name))
+
+    def _stream(
+        self, function: Callable[..., Iterator[object]], *arguments: object, name: int
+    ) -> Stream:
+        return Stream(function, *arguments, inbox=self.inbox, name=name, spares=self.spares)
 
     def _name(self) -> int:
         self._serial += 1

@@ -192,7 +192,7 @@ def killed(*_: object) -> Iterator[Found]:
 
 def test_a_crashed_worker_leaves_the_best(monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.setattr(portfolio, "wander", killed)
-    done = explore([errand()], seconds=20, effort=3, seed=0, workers=2)
+    done = explore([errand()], seconds=20, effort=10, seed=0, workers=2)
     assert done.standings[0].best == errand().starts[0]
     assert done.standings[0].crashed == 2
 
