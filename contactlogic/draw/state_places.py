@@ -12,6 +12,7 @@ from __future__ import annotations
 import math
 from collections.abc import Hashable, Mapping, Sequence
 from dataclasses import dataclass
+from itertools import combinations
 from typing import Generic, TypeVar
 
 __all__ = ["Island", "Placed", "place_islands"]
@@ -74,7 +75,7 @@ def place_islands(
         if one != two:
             beside.setdefault(one, []).append(two)
             beside.setdefault(two, []).append(one)
-    shapes = [_place(island, beside) for island in islands]
+    shapes = [_placed_apart(island, beside) for island in islands]
     # In the order given, but lone states last, where they fill a shelf.
     order = sorted(range(len(islands)), key=lambda k: (len(shapes[k][0]) == 1, k))
     turns = [0.0] * len(islands)
@@ -155,8 +156,25 @@ def _best_turn(
     return min((k * step for k in range(4 * max(len(island.ring), 3))), key=length)
 
 
-def _place(island: Island[N], beside: Mapping[N, Sequence[N]]) -> tuple[dict[N, Point], float]:
-    """Angle and radius of each state of an island, and the radius of its ring."""
+def _placed_apart(
+    island: Island[N], beside: Mapping[N, Sequence[N]]
+) -> tuple[dict[N, Point], float]:
+    """As `_place`; a single run sticks out where winding it round would meet another state."""
+    for wind in (_WIND, _LAYER):
+        polar, ring = _place(island, beside, wind)
+        points = _points(polar, 0.0, (0.0, 0.0)).values()
+        if all(math.dist(a, b) >= 1.0 for a, b in combinations(points, 2)):
+            break
+    return polar, ring
+
+
+def _place(
+    island: Island[N], beside: Mapping[N, Sequence[N]], wind: float
+) -> tuple[dict[N, Point], float]:
+    """Angle and radius of each state of an island, and the radius of its ring.
+
+    `wind` is the least distance of rings that have one state each.
+    """
     count = len(island.ring)
     ring = 0.0
     if count > 1:
@@ -166,7 +184,7 @@ def _place(island: Island[N], beside: Mapping[N, Sequence[N]]) -> tuple[dict[N, 
         need = _SPACE / (2 * math.sin(math.pi / len(layer))) if len(layer) > 1 else 0.0
         least = radii[-1] + _LAYER
         if _lone(island, len(radii) - 1):
-            least = radii[-1] + _WIND
+            least = radii[-1] + wind
         if len(radii) == 1:
             least = max(least, island.room) if count == 1 else least + _APART
         radii.append(max(least, need * 1.03))

@@ -4,8 +4,8 @@ Dynamic programming over network size: a network of k contacts is one of i and o
 contacts in series or in parallel, so the functions that need k contacts are those first reached by
 a conjunction or disjunction of functions that need i and k - i (the formula-size recurrence of
 Knuth, The Art of Computer Programming 4A, 7.1.2).  Permuting relays and swapping makes with breaks
-changes no size, so one side of each pair runs over class representatives only (222 classes would
-do with negation too; 402 are used, OEIS A000616).
+changes no size, so the smaller side of each pair runs over class representatives only (222 classes
+would do with negation too; 402 are used, OEIS A000616).
 
 The worst sizes found, 1, 4, 10, 16 for one to four relays, are OEIS A056287 plus one.
 """
@@ -108,7 +108,7 @@ def size_table() -> SizeTable:
     while (size == _UNKNOWN).any():
         k = len(by_size)
         reached = numpy.zeros(_FUNCTIONS, dtype=bool)
-        for i in range(1, k):
+        for i in range(1, k // 2 + 1):
             for chosen in classes[i]:
                 reached[by_size[k - i] & chosen] = True
                 reached[by_size[k - i] | chosen] = True
