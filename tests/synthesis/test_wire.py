@@ -30,7 +30,7 @@ def full_adder(**limits: object) -> Job:
 
 
 def test_both_forms_are_proved_and_the_bridge_needs_no_more() -> None:
-    result = contactlogic.wire(full_adder(), effort=30)
+    result = contactlogic.wire(full_adder(), effort=12)
     ladder, bridge = result.designs
     assert (ladder.form, bridge.form) == ("ladder", "bridge")
     assert len(bridge.network.poles) <= len(ladder.network.poles)
@@ -85,7 +85,7 @@ def test_free_rows_take_the_cheapest_completion() -> None:
 def test_least_contacts_on_request() -> None:
     # odd parity of three: 8 contacts as a bridge (OEIS A058759), 10 as a ladder (A056287 plus one)
     odd = Target(3, 0b10010110)
-    result = contactlogic.wire(job(3, odd, limits=Limits(objective="contacts")), effort=20)
+    result = contactlogic.wire(job(3, odd, limits=Limits(objective="contacts")), effort=8)
     contacts = [
         sum(count.contacts for count in design.network.per_relay().values())
         for design in result.designs
@@ -96,7 +96,7 @@ def test_least_contacts_on_request() -> None:
 
 def test_a_budget_is_kept_in_the_search() -> None:
     odd = Target(3, 0b10010110)
-    kept = contactlogic.wire(job(3, odd, limits=Limits(poles={"A": 1, "C": 1})), effort=60)
+    kept = contactlogic.wire(job(3, odd, limits=Limits(poles={"A": 1, "C": 1})), effort=25)
     (bridge,) = kept.designs  # every ladder for odd parity has more contacts of A or C
     use = bridge.network.per_relay()
     assert use["A"].poles <= 1
@@ -132,13 +132,13 @@ def test_repeaters_are_added_as_few_as_possible() -> None:
 
 def test_separate_contacts_never_pair() -> None:
     wanted = full_adder(contacts={"C": SeparateContacts(9, 9)})
-    result = contactlogic.wire(wanted, effort=15)
+    result = contactlogic.wire(wanted, effort=8)
     for design in result.designs:
         assert design.network.per_relay()["C"].changeovers == 0
 
 
 def test_isolated_loads_are_never_joined_when_off() -> None:
-    result = contactlogic.wire(full_adder(isolate="all"), effort=15)
+    result = contactlogic.wire(full_adder(isolate="all"), effort=8)
     for design in result.designs:
         proof = contactlogic.verify(design, result.job)
         assert proof.ok
