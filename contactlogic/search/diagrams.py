@@ -173,7 +173,13 @@ def starts(targets: Sequence[Target], count: int) -> list[Mesh]:
         chosen = selector(targets, order) if len(targets) > 1 else None
         if chosen is not None:
             found.setdefault(chosen)
-    return sorted(found, key=lambda mesh: (len(mesh.poles), mesh.poles))[:count]
+    return sorted(found, key=_order)[:count]
+
+
+def _order(mesh: Mesh) -> tuple[object, ...]:
+    """Fewest poles first, then by nets; an unwired end comes before all nets."""
+    nets = tuple(tuple(-1 if net is None else net for net in pole) for pole in mesh.poles)
+    return len(mesh.poles), nets
 
 
 def fewest_nodes(targets: Sequence[Target]) -> Mesh:

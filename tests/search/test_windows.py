@@ -230,3 +230,11 @@ def test_streams_report_their_end(work, values, failure) -> None:
     assert event.name == 7
     if values is not None:
         assert got == values
+
+
+def test_starts_that_differ_in_what_is_left_unwired_are_put_in_order() -> None:
+    targets = (Target(2, 8, 6), Target(2, 3))
+    found = starts(targets, 12)
+    assert [len(mesh.poles) for mesh in found] == sorted(len(mesh.poles) for mesh in found)
+    goal = Goal(2, targets)
+    assert any(is_right(mesh, targets) for mesh in found if goal.accepts(mesh))
