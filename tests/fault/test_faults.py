@@ -172,6 +172,7 @@ def test_what_counts_as_open(kind, opens):
     assert Fault(kind).opens is opens
 
 
+@pytest.mark.slow
 def test_sixty_poles_of_sixteen_relays_take_seconds():
     import time
 

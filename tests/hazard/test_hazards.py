@@ -252,6 +252,7 @@ def test_moves_are_pairs_of_listed_rows_and_steps_of_a_sequence():
     assert dict(steps.released) == {"A": 0b0100, "B": 0b0011}
 
 
+@pytest.mark.slow
 def test_sixty_poles_of_sixteen_relays_take_seconds():
     import time
 

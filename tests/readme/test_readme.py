@@ -105,7 +105,7 @@ def test_examples_begin_with_a_comment_and_can_be_wired(
         assert ran.exit_code == 1, ran.stderr
         assert ran.stdout.startswith("sticks: ")
         return
-    effort = "10" if path.stem == "sidings" else "2"  # a budget takes some search to keep
+    effort = "10" if path.stem == "sidings" else "1"  # a budget takes some search to keep
     ran = CliRunner().invoke(app, ["wire", str(path), "--effort", effort])
     assert ran.exit_code == 0, ran.stderr
     assert "\nproved: all " in ran.stdout
@@ -196,7 +196,7 @@ def test_the_sequencer_commands_do_what_is_said(
     assert [line.split()[1] for line in lines] == ["wire", "recover", "recover"]
     status = []
     for line in lines:
-        extra = ["--effort", "4"] if " wire " in line else []
+        extra = ["--effort", "2"] if " wire " in line else []
         status.append(CliRunner().invoke(app, [*shlex.split(line)[1:], *extra]).exit_code)
     assert status == [0, 0, 1]
     assert (tmp_path / "fountain" / "bridge" / "states.svg").exists()

@@ -90,7 +90,7 @@ def test_any_network_is_traced_as_path_enumeration_finds_it(
 
 
 @given(st.integers(1, 3).flatmap(lambda n: several_targets(n)), SUPPLIES, st.integers(0, 99))
-@settings(max_examples=10)
+@settings(max_examples=6)
 def test_own_lists_traced_give_back_the_job(tmp_path_factory, targets, supply, seed):
     folder = tmp_path_factory.mktemp("list")
     n = next(iter(targets.values())).n
