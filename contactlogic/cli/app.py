@@ -9,9 +9,9 @@ from typing import Annotated
 
 import typer
 
-from contactlogic.cli import bench, schedule
+from contactlogic.cli import bench, options, schedule
 from contactlogic.cli import page as one_page
-from contactlogic.cli.choices import Form, Forms, Moves
+from contactlogic.cli.choices import Forms, Moves
 from contactlogic.cli.status import Status, guarded
 from contactlogic.errors import JobFileError
 
@@ -73,7 +73,7 @@ def wire(
     json: Annotated[
         bool, typer.Option("--json", help="Print the design as JSON alone; write no file.")
     ] = False,
-    quiet: Annotated[bool, typer.Option("--quiet", "-q", help="Print errors only.")] = False,
+    quiet: options.Quiet = False,
     verbose: Annotated[
         bool, typer.Option("--verbose", "-v", help="Say more, for instance of each cover.")
     ] = False,
@@ -100,26 +100,18 @@ def wire(
         bool,
         typer.Option("--repeaters", help="Give relays over budget repeaters, as few as possible."),
     ] = False,
-    per_terminal: Annotated[
-        int, typer.Option(min=2, max=9, metavar="N", help="Most wires on a terminal, 2 or more.")
-    ] = 2,
-    loads: Annotated[
-        str | None,
-        typer.Option(metavar="A,B", help="Which columns of a .csv or .xlsx table are loads."),
-    ] = None,
-    unlisted: Annotated[
-        str | None,
-        typer.Option(metavar="off|free", help="What loads do in rows that a .csv or .xlsx lacks."),
-    ] = None,
-    parts: schedule.Parts = None,
+    per_terminal: options.PerTerminal = 2,
+    loads: options.Loads = None,
+    unlisted: options.Unlisted = None,
+    parts: options.Parts = None,
     cheapest: Annotated[
         bool, typer.Option("--cheapest", help="Search for the least price, not the fewest poles.")
     ] = False,
-    spares: schedule.Spares = 0,
-    have: schedule.Have = None,
-    buy: schedule.Buy = None,
-    coil_volts: schedule.CoilVolts = None,
-    no_parallel: schedule.NoParallel = False,
+    spares: options.Spares = 0,
+    have: options.Have = None,
+    buy: options.Buy = None,
+    coil_volts: options.CoilVolts = None,
+    no_parallel: options.NoParallel = False,
     hazard_free: Annotated[
         bool,
         typer.Option("--hazard-free", help="No load may drop out or flash while one relay moves."),
@@ -134,7 +126,6 @@ def wire(
 ) -> None:
     """Wire the loads of JOB with as few changeover contacts as found, prove it and draw it."""
     from contactlogic.cli import wiring
-    from contactlogic.cli.buying import Asked
 
     request = wiring.Request(
         job=job,
@@ -152,9 +143,7 @@ def wire(
         repeaters=repeaters,
         per_terminal=per_terminal,
         page=page,
-        buying=Asked(
-            parts, spares, coil_volts, not no_parallel, tuple(have or ()), tuple(buy or ())
-        ),
+        buying=options.asked(parts, spares, have, buy, coil_volts, no_parallel),
         cheapest=cheapest,
         hazard_free=hazard_free,
         fail_off=fail_off,
@@ -162,8 +151,7 @@ def wire(
         unlisted=unlisted,
     )
     with guarded(keep=str(job), trace=verbose):
-        if seconds is not None and effort is not None:
-            raise JobFileError("--seconds and --effort exclude each other", hint="give one of them")
+        options.check_limits(seconds, effort)
         if cheapest and parts is None:
             raise JobFileError("--cheapest needs prices", hint="name a parts list with --parts")
         if (cheapest, hazard_free, fail_off is not None).count(True) > 1:
@@ -182,14 +170,8 @@ def verify(
     job: Annotated[
         Path, typer.Argument(metavar="JOB", help="Job file: .toml, or a table as .csv or .xlsx.")
     ],
-    loads: Annotated[
-        str | None,
-        typer.Option(metavar="A,B", help="Which columns of a .csv or .xlsx table are loads."),
-    ] = None,
-    unlisted: Annotated[
-        str | None,
-        typer.Option(metavar="off|free", help="What loads do in rows that a .csv or .xlsx lacks."),
-    ] = None,
+    loads: options.Loads = None,
+    unlisted: options.Unlisted = None,
 ) -> None:
     """Prove the designs of a file against JOB: rows, sneak paths, back-feed, pole use."""
     from contactlogic.cli import verifying
@@ -208,9 +190,7 @@ def recover(
         Path | None,
         typer.Option(metavar="DESIGN", help="Prove the wiring of this design.json for JOB."),
     ] = None,
-    form: Annotated[
-        Form | None, typer.Option(help="Which design of the file; all of them if not given.")
-    ] = None,
+    form: options.OneForm = None,
     moves: Annotated[
         Moves, typer.Option(help="One relay at a time, or any group of relays at once.")
     ] = Moves.single,
@@ -221,7 +201,7 @@ def recover(
     memory: Annotated[
         float, typer.Option(min=0.001, metavar="GIB", help="Use no more memory than this.")
     ] = 4.0,
-    quiet: Annotated[bool, typer.Option("--quiet", "-q", help="Print errors only.")] = False,
+    quiet: options.Quiet = False,
 ) -> None:
     """Prove from all power-on states where the relays of JOB end up: 0 recovers, 1 does not."""
     from contactlogic.cli import recovering
@@ -277,10 +257,7 @@ def trace(
         str | None,
         typer.Option(metavar="A,B", help="Which columns of a .csv or .xlsx job are loads."),
     ] = None,
-    unlisted: Annotated[
-        str | None,
-        typer.Option(metavar="off|free", help="What loads do in rows that a .csv or .xlsx lacks."),
-    ] = None,
+    unlisted: options.Unlisted = None,
 ) -> None:
     """Say what existing wiring really does, and whether it is what JOB wants: 0 yes, 1 no."""
     from contactlogic.cli import tracing

@@ -7,38 +7,10 @@ from typing import Annotated
 
 import typer
 
-from contactlogic.cli.choices import Form
+from contactlogic.cli import options
 from contactlogic.cli.status import Status, guarded
 
 __all__ = ["register"]
-
-_Source = Annotated[
-    Path,
-    typer.Argument(
-        metavar="JOB_OR_DESIGN", help="A design.json; or a job file, which is wired first."
-    ),
-]
-_Job = Annotated[
-    Path | None,
-    typer.Argument(
-        metavar="[JOB]",
-        help="What the design is to do; without it, whatever it does.",
-        show_default=False,
-    ),
-]
-_Form = Annotated[
-    Form | None, typer.Option(help="Which design of the file; all of them if not given.")
-]
-_Loads = Annotated[
-    str | None,
-    typer.Option(metavar="A,B", help="Which columns of a .csv or .xlsx table are loads."),
-]
-_Unlisted = Annotated[
-    str | None,
-    typer.Option(metavar="off|free", help="What loads do in rows that a .csv or .xlsx lacks."),
-]
-_Json = Annotated[bool, typer.Option("--json", help="Print as JSON alone.")]
-_Quiet = Annotated[bool, typer.Option("--quiet", "-q", help="Print errors only.")]
 
 
 def register(app: typer.Typer) -> None:
@@ -49,16 +21,16 @@ def register(app: typer.Typer) -> None:
 
 
 def hazards(
-    source: _Source,
-    job: _Job = None,
-    form: _Form = None,
+    source: options.JobOrDesign,
+    job: options.JobOfDesign = None,
+    form: options.OneForm = None,
     none: Annotated[
         bool, typer.Option("--none", help="Want none: exit status 1 if there is one.")
     ] = False,
-    json: _Json = False,
-    quiet: _Quiet = False,
-    loads: _Loads = None,
-    unlisted: _Unlisted = None,
+    json: options.AsJson = False,
+    quiet: options.Quiet = False,
+    loads: options.Loads = None,
+    unlisted: options.Unlisted = None,
 ) -> None:
     """Name every load that can drop out or flash while one relay moves, and what cures it."""
     from contactlogic.cli import hazarding
@@ -72,9 +44,9 @@ def hazards(
 
 
 def faults(
-    source: _Source,
-    job: _Job = None,
-    form: _Form = None,
+    source: options.JobOrDesign,
+    job: options.JobOfDesign = None,
+    form: options.OneForm = None,
     fail_off: Annotated[
         str | None,
         typer.Option(
@@ -82,10 +54,10 @@ def faults(
             help="Loads that no single open fault may turn on: exit status 1 if one does.",
         ),
     ] = None,
-    json: _Json = False,
-    quiet: _Quiet = False,
-    loads: _Loads = None,
-    unlisted: _Unlisted = None,
+    json: options.AsJson = False,
+    quiet: options.Quiet = False,
+    loads: options.Loads = None,
+    unlisted: options.Unlisted = None,
 ) -> None:
     """Try every single fault: which rows go wrong, and which way; loads turned on first."""
     from contactlogic.cli import faulting
@@ -99,9 +71,9 @@ def faults(
 
 
 def plan_of_tests(
-    source: _Source,
-    job: _Job = None,
-    form: _Form = None,
+    source: options.JobOrDesign,
+    job: options.JobOfDesign = None,
+    form: options.OneForm = None,
     sheet: Annotated[
         Path | None,
         typer.Option(metavar="FILE", help="Write the commissioning sheet there, as Markdown."),
@@ -109,10 +81,10 @@ def plan_of_tests(
     force: Annotated[
         bool, typer.Option("--force", help="Write even where the file is there already.")
     ] = False,
-    json: _Json = False,
-    quiet: _Quiet = False,
-    loads: _Loads = None,
-    unlisted: _Unlisted = None,
+    json: options.AsJson = False,
+    quiet: options.Quiet = False,
+    loads: options.Loads = None,
+    unlisted: options.Unlisted = None,
 ) -> None:
     """Plan the fewest rows to set, and loads to look at, that show every single fault."""
     from contactlogic.cli import planning

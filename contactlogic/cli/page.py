@@ -7,10 +7,9 @@ from typing import Annotated
 
 import typer
 
+from contactlogic.cli import options
 from contactlogic.cli.choices import Forms
-from contactlogic.cli.schedule import Buy, CoilVolts, Have, NoParallel, Parts, Spares
 from contactlogic.cli.status import Status, guarded
-from contactlogic.errors import JobFileError
 
 __all__ = ["register"]
 
@@ -21,20 +20,8 @@ def register(app: typer.Typer) -> None:
 
 
 def page(
-    source: Annotated[
-        Path,
-        typer.Argument(
-            metavar="JOB_OR_DESIGN", help="A design.json; or a job file, which is wired first."
-        ),
-    ],
-    job: Annotated[
-        Path | None,
-        typer.Argument(
-            metavar="[JOB]",
-            help="What the design is to do; without it, whatever it does.",
-            show_default=False,
-        ),
-    ] = None,
+    source: options.JobOrDesign,
+    job: options.JobOfDesign = None,
     out: Annotated[
         Path | None,
         typer.Option(
@@ -44,45 +31,31 @@ def page(
     force: Annotated[
         bool, typer.Option("--force", help="Write even over a file that is no such page.")
     ] = False,
-    parts: Parts = None,
-    spares: Spares = 0,
-    have: Have = None,
-    buy: Buy = None,
-    coil_volts: CoilVolts = None,
-    no_parallel: NoParallel = False,
-    quiet: Annotated[bool, typer.Option("--quiet", "-q", help="Print errors only.")] = False,
-    form: Annotated[Forms, typer.Option(help="Which form or forms.")] = Forms.both,
-    seed: Annotated[int, typer.Option(min=0, help="Of the search for a job's wiring.")] = 0,
-    seconds: Annotated[
-        float | None, typer.Option(min=0.1, metavar="S", help="Search for the wiring so long.")
-    ] = None,
-    effort: Annotated[
-        int | None, typer.Option(min=0, metavar="N", help="Search by N windows instead.")
-    ] = None,
-    loads: Annotated[
-        str | None,
-        typer.Option(metavar="A,B", help="Which columns of a .csv or .xlsx table are loads."),
-    ] = None,
-    unlisted: Annotated[
-        str | None,
-        typer.Option(metavar="off|free", help="What loads do in rows that a .csv or .xlsx lacks."),
-    ] = None,
+    parts: options.Parts = None,
+    spares: options.Spares = 0,
+    have: options.Have = None,
+    buy: options.Buy = None,
+    coil_volts: options.CoilVolts = None,
+    no_parallel: options.NoParallel = False,
+    quiet: options.Quiet = False,
+    form: options.AnyForm = Forms.both,
+    seed: options.Seed = 0,
+    seconds: options.Seconds = None,
+    effort: options.Effort = None,
+    loads: options.Loads = None,
+    unlisted: options.Unlisted = None,
 ) -> None:
     """Write one page for the browser: all papers, hazards, faults, test plan, live drawings."""
     from contactlogic.cli import paging
-    from contactlogic.cli.buying import Asked
 
     with guarded(keep=str(source)):
-        if seconds is not None and effort is not None:
-            raise JobFileError("--seconds and --effort exclude each other", hint="give one of them")
+        options.check_limits(seconds, effort)
         request = paging.Request(
             source=source,
             job=job,
             out=out,
             force=force,
-            asked=Asked(
-                parts, spares, coil_volts, not no_parallel, tuple(have or ()), tuple(buy or ())
-            ),
+            asked=options.asked(parts, spares, have, buy, coil_volts, no_parallel),
             quiet=quiet,
             form=form.value,
             seed=seed,

@@ -9,21 +9,26 @@ from typing import TYPE_CHECKING
 
 from contactlogic.cli.buying import Asked, schedules_of_result
 from contactlogic.cli.jobs import Wirable, wirable_job
-from contactlogic.cli.subject import Source, Subject, subject, wanted_of
-from contactlogic.cli.wiring import wired
+from contactlogic.cli.subject import (
+    Source,
+    Subject,
+    is_design,
+    subject,
+    wanted_of,
+    wired_alone,
+)
 from contactlogic.design import Result
-from contactlogic.errors import JobFileError, LimitError
+from contactlogic.errors import LimitError
 from contactlogic.job.model import Job
 
 if TYPE_CHECKING:
+    from contactlogic.fault import Panel
     from contactlogic.page import Section
     from contactlogic.purchase.schedule import Schedule
     from contactlogic.report.bench import WireList
     from contactlogic.synthesis import Forms
 
 __all__ = ["Request", "run"]
-
-_DESIGN = ".json"
 
 
 @dataclass(frozen=True)
@@ -68,7 +73,7 @@ def run(request: Request) -> bool:
 
     out = request.out or Path(f"{request.source.stem}.html")
     check_page(out, force=request.force)
-    found = _of_design(request) if request.source.suffix.lower() == _DESIGN else _of_job(request)
+    found = _of_design(request) if is_design(request.source) else _of_job(request)
     result = found.result
     schedules = _schedules(found, request.asked)
     lists = [
@@ -113,18 +118,16 @@ def _of_design(request: Request) -> _Found:
 
 def _of_job(request: Request) -> _Found:
     """Designs of a job, which is wired first."""
-    from contactlogic.cli.progress import live
     from contactlogic.synthesis import Search
 
-    if request.job is not None:
-        raise JobFileError(
-            f"{request.source} is no design file",
-            expected="a design file (.json), then its job; or a job alone, which is wired",
-        )
-    job = wirable_job(request.source, request.loads, request.unlisted)
-    with live(not request.quiet) as watch:
-        search = Search(request.form, request.seconds, request.effort, request.seed, watch=watch)
-        result = wired(job, search)
+    job, result = wired_alone(
+        request.source,
+        request.job,
+        request.loads,
+        request.unlisted,
+        Search(request.form, request.seconds, request.effort, request.seed),
+        shown=not request.quiet,
+    )
     wanted, moves = wanted_of(job)
     return _Found(Subject(wanted, result.designs, result.repeaters, moves), result, job)
 
@@ -149,53 +152,54 @@ def _pictures(result: Result, index: int) -> dict[str, bytes]:
 def _sections(wires: WireList, seen: Subject) -> Iterator[Section]:
     """What is told of a design beyond the report; a part beyond its limits says so."""
     from contactlogic.page import Section
+    from contactlogic.report.panels import panel_of_design
     from contactlogic.report.text import markdown
 
+    panel = panel_of_design(wires.design, seen.job, seen.repeaters)
     for title, told in _STUDIES:
         try:
-            text = told(wires, seen)
+            text = told(wires, panel, seen)
         except LimitError as error:
             text = f"Not worked out: {markdown(str(error))}"
         yield Section(title, text)
 
 
-def _ticks(wires: WireList, seen: Subject) -> str:
+def _ticks(wires: WireList, panel: Panel, seen: Subject) -> str:
     from contactlogic.report.bench import tick_list
 
-    del seen
+    del panel, seen
     return tick_list(wires).partition("\n")[2]
 
 
-def _hazards(wires: WireList, seen: Subject) -> str:
+def _hazards(wires: WireList, panel: Panel, seen: Subject) -> str:
     from contactlogic.hazard import study_hazards
     from contactlogic.report.hazards import hazards_markdown
 
+    del panel
     network = wires.design.network
     return hazards_markdown(study_hazards(network, seen.job, seen.moves, seen.repeaters))
 
 
-def _faults(wires: WireList, seen: Subject) -> str:
+def _faults(wires: WireList, panel: Panel, seen: Subject) -> str:
     from contactlogic.fault import study_faults
     from contactlogic.report.faults import faults_markdown
-    from contactlogic.report.panels import panel_of_design, wanted_of
+    from contactlogic.report.panels import wanted_of
 
-    panel = panel_of_design(wires.design, seen.job, seen.repeaters)
+    del wires
     return faults_markdown(study_faults(panel, wanted_of(panel, seen.job, seen.repeaters)))
 
 
-def _plan(wires: WireList, seen: Subject) -> str:
+def _plan(wires: WireList, panel: Panel, seen: Subject) -> str:
     from contactlogic.commission import plan_test
     from contactlogic.report.commissioning import commissioning_sheet
-    from contactlogic.report.panels import panel_of_design
     from contactlogic.report.wiring import design_name
 
-    panel = panel_of_design(wires.design, seen.job, seen.repeaters)
     plan = plan_test(panel, seen.job.listed)
     name = design_name(wires.design, seen.job)
     return commissioning_sheet(plan, panel, seen.job, name).partition("\n")[2]
 
 
-_STUDIES: Sequence[tuple[str, Callable[[WireList, Subject], str]]] = (
+_STUDIES: Sequence[tuple[str, Callable[[WireList, Panel, Subject], str]]] = (
     ("Wires to tick off", _ticks),
     ("Hazards", _hazards),
     ("Single faults", _faults),

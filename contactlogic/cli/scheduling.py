@@ -15,7 +15,8 @@ from contactlogic.cli.buying import (
     schedules_of_result,
 )
 from contactlogic.cli.jobs import wirable_job
-from contactlogic.cli.wiring import screen_width, wired
+from contactlogic.cli.subject import Source, is_design, subject, wired_alone
+from contactlogic.cli.wiring import screen_width
 from contactlogic.errors import DesignFileError, JobFileError, Place
 from contactlogic.job.model import Job
 
@@ -24,8 +25,6 @@ if TYPE_CHECKING:
     from contactlogic.synthesis import Forms
 
 __all__ = ["Request", "run"]
-
-_DESIGN = ".json"
 
 
 @dataclass(frozen=True)
@@ -66,8 +65,7 @@ def run(request: Request) -> bool:
 
     if request.out is not None:
         check_folder(request.out, force=request.force)
-    of_design = request.source.suffix.lower() == _DESIGN
-    found = _of_design(request) if of_design else _of_job(request)
+    found = _of_design(request) if is_design(request.source) else _of_job(request)
     written = []
     if request.out is not None:
         files = _files(found)
@@ -87,7 +85,6 @@ def run(request: Request) -> bool:
 
 def _of_design(request: Request) -> _Found:
     """Schedules of a design file, with the job's facts where it is given."""
-    from contactlogic.cli.subject import Source, subject
     from contactlogic.report.designfile import read_design
 
     if request.job is None:
@@ -118,20 +115,18 @@ def _of_design(request: Request) -> _Found:
 
 def _of_job(request: Request) -> _Found:
     """Schedules of a job, which is wired first."""
-    from contactlogic.cli.progress import live
     from contactlogic.report.designfile import dumps
     from contactlogic.synthesis import Search
 
-    if request.job is not None:
-        raise JobFileError(
-            f"{request.source} is no design file",
-            expected="a design file (.json), then its job; or a job alone, which is wired",
-        )
-    job = wirable_job(request.source, request.loads, request.unlisted)
     drawer_of(request.asked, None)  # a fault of the parts list is told before the search
-    with live(not (request.quiet or request.json)) as watch:
-        search = Search(request.form, request.seconds, request.effort, request.seed, watch=watch)
-        result = wired(job, search)
+    job, result = wired_alone(
+        request.source,
+        request.job,
+        request.loads,
+        request.unlisted,
+        Search(request.form, request.seconds, request.effort, request.seed),
+        shown=not (request.quiet or request.json),
+    )
     schedules = schedules_of_result(job, result, request.asked)
     return _Found(result.job.title, dumps(result).encode(), schedules, result.interrupted)
 

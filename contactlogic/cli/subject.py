@@ -15,10 +15,9 @@ from contactlogic.job.model import Job
 if TYPE_CHECKING:
     from contactlogic.hazard import Moves
     from contactlogic.report.designfile import DesignFile
+    from contactlogic.synthesis import Search
 
-__all__ = ["Source", "Subject", "subject", "wanted_of"]
-
-_DESIGN = ".json"
+__all__ = ["Source", "Subject", "is_design", "subject", "wanted_of", "wired_alone"]
 
 
 @dataclass(frozen=True)
@@ -62,13 +61,19 @@ def subject(source: Source) -> Subject:
     Raises:
         InputError: the job or the design file cannot be used, or a design is not as wanted.
     """
-    if source.path.suffix.lower() != _DESIGN:
-        if source.job is not None:
-            raise JobFileError(
-                f"{source.path} is no design file",
-                expected="a design file (.json), then the job; or a job alone, which is wired",
-            )
-        return _wired(source)
+    if not is_design(source.path):
+        from contactlogic.synthesis import Search
+
+        wanted, result = wired_alone(
+            source.path,
+            source.job,
+            source.loads,
+            source.unlisted,
+            Search(source.form or "both"),
+            shown=not source.quiet,
+        )
+        job, moves = wanted_of(wanted)
+        return Subject(job, result.designs, result.repeaters, moves)
     from contactlogic.report.designfile import read_design
 
     file = read_design(source.path)
@@ -86,16 +91,41 @@ def subject(source: Source) -> Subject:
     return _proved(job, moves, designs, file.repeaters, place)
 
 
-def _wired(source: Source) -> Subject:
+def is_design(path: Path) -> bool:
+    """Whether a file is taken for a design file, not for a job."""
+    return path.suffix.lower() == ".json"
+
+
+def wired_alone(
+    path: Path,
+    second: Path | None,
+    loads: str | None,
+    unlisted: str | None,
+    search: Search,
+    *,
+    shown: bool,
+) -> tuple[Wirable, Result]:
+    """A job that stands where a design may, and what it is wired to.
+
+    Args:
+        path: the job.
+        second: what was given after it; a job is wired by itself.
+        search: how to search; its progress is shown if `shown`.
+
+    Raises:
+        InputError: the job cannot be used, or a second file was given.
+    """
     from contactlogic.cli.progress import live
     from contactlogic.cli.wiring import wired
-    from contactlogic.synthesis import Search
 
-    wanted = wirable_job(source.path, source.loads, source.unlisted)
-    with live(not source.quiet) as watch:
-        result: Result = wired(wanted, Search(source.form or "both", watch=watch))
-    job, moves = wanted_of(wanted)
-    return Subject(job, result.designs, result.repeaters, moves)
+    if second is not None:
+        raise JobFileError(
+            f"{path} is no design file",
+            expected="a design file (.json), then the job; or a job alone, which is wired",
+        )
+    job = wirable_job(path, loads, unlisted)
+    with live(shown) as watch:
+        return job, wired(job, replace(search, watch=watch))
 
 
 def wanted_of(job: Wirable) -> tuple[Job, Moves]:
