@@ -12,9 +12,12 @@ from contactlogic.network import Network, Pole
 from contactlogic.search.encoding import Ends
 from contactlogic.truth import all_rows, literal
 
-__all__ = ["SUPPLY", "Mesh", "from_network", "live_rows", "to_network", "trim"]
+__all__ = ["SUPPLY", "Mesh", "from_network", "joins", "live_rows", "spread", "to_network", "trim"]
 
 SUPPLY = 0
+
+Joins = dict[int, list[tuple[int, int]]]
+"""By net: other nets, and the rows in which a contact joins them."""
 
 
 @dataclass(frozen=True)
@@ -70,20 +73,30 @@ def to_network(mesh: Mesh, relays: Sequence[str], loads: Sequence[str]) -> Netwo
 
 def live_rows(poles: Iterable[Ends], n: int, source: int = SUPPLY) -> Mapping[int, int]:
     """Rows in which each net is joined to `source`, as truth tables; nets never reached are 0."""
-    touching: dict[int, list[tuple[int, int]]] = {source: []}
+    return spread(joins(poles, n, [source]), {source: all_rows(n)})
+
+
+def joins(poles: Iterable[Ends], n: int, nets: Iterable[int] = ()) -> Joins:
+    """For each net, of `nets` and those of the poles, the nets beside it and the rows they join."""
+    beside: Joins = {net: [] for net in nets}
     for pole in poles:
         for net, make in ((pole.make, True), (pole.break_, False)):
             if net is not None:
                 closed = literal(n, pole.relay, make)
-                touching.setdefault(pole.common, []).append((net, closed))
-                touching.setdefault(net, []).append((pole.common, closed))
-    live = dict.fromkeys(touching, 0)
-    live[source] = all_rows(n)
-    waiting = [source]
+                beside.setdefault(pole.common, []).append((net, closed))
+                beside.setdefault(net, []).append((pole.common, closed))
+    return beside
+
+
+def spread(beside: Joins, start: Mapping[int, int]) -> dict[int, int]:
+    """Rows in which each net is joined to a start, in that start's rows."""
+    live = dict.fromkeys(beside, 0)
+    live.update(start)
+    waiting = list(start)
     while waiting:
         net = waiting.pop()
         here = live[net]
-        for other, closed in touching[net]:
+        for other, closed in beside[net]:
             more = here & closed & ~live[other]
             if more:
                 live[other] |= more

@@ -18,12 +18,11 @@ from itertools import combinations
 from random import Random
 
 from contactlogic.search.encoding import Ends
-from contactlogic.search.mesh import SUPPLY, Mesh
+from contactlogic.search.mesh import SUPPLY, Mesh, joins, spread
 from contactlogic.truth import Target, all_rows, literal
 
 __all__ = ["bystander", "stand_in"]
 
-_Touching = dict[int, list[tuple[int, int]]]
 _Rows = Mapping[int, int]  # by net, rows in which it has some property
 _SPARE = 0.9  # how often a throw that nothing needs is wired where it does no harm
 _TRIES = 8  # nets looked at for such a throw
@@ -48,8 +47,8 @@ def stand_in(
     """
     n = targets[0].n
     nets = mesh.nets()
-    touching = _touching([pole for k, pole in enumerate(mesh.poles) if k not in out], nets, n)
-    live = _spread(touching, {SUPPLY: all_rows(n)})
+    beside = joins([pole for k, pole in enumerate(mesh.poles) if k not in out], n, nets)
+    live = spread(beside, {SUPPLY: all_rows(n)})
     lost: dict[int, int] = {}
     off: dict[int, int] = {}
     for feed, target in zip(mesh.feeds, targets, strict=True):
@@ -63,8 +62,8 @@ def stand_in(
         return ()
     state = _State(
         live,
-        _spread(touching, off),
-        [(gone, _spread(touching, {feed: gone})) for feed, gone in lost.items()],
+        spread(beside, off),
+        [(gone, spread(beside, {feed: gone})) for feed, gone in lost.items()],
     )
     taken = {mesh.poles[k] for k in out}
     relays = list(range(n))
@@ -84,12 +83,12 @@ def bystander(
     Added, it gives a walk room: two others may now become one.
     """
     n = targets[0].n
-    touching = _touching(mesh.poles, mesh.nets(), n)
+    beside = joins(mesh.poles, n, mesh.nets())
     off: dict[int, int] = {}
     for feed, target in zip(mesh.feeds, targets, strict=True):
         if feed is not None and target.off:
             off[feed] = off.get(feed, 0) | target.off
-    state = _State(_spread(touching, {SUPPLY: all_rows(n)}), _spread(touching, off), [])
+    state = _State(spread(beside, {SUPPLY: all_rows(n)}), spread(beside, off), [])
     for _ in range(_TRIES):
         relay, common = random.randrange(n), random.choice(state.nets)
         throws = [_spare(state, common, literal(n, relay, make), random) for make in (True, False)]
@@ -181,30 +180,3 @@ def _spare(state: _State, common: int, rows: int, random: Random) -> int | None:
         if net != common and state.harmless(common, net, rows):
             return net
     return None
-
-
-def _touching(poles: Iterable[Ends], nets: Iterable[int], n: int) -> _Touching:
-    touching: _Touching = {net: [] for net in nets}
-    for pole in poles:
-        for net, make in ((pole.make, True), (pole.break_, False)):
-            if net is not None:
-                closed = literal(n, pole.relay, make)
-                touching[pole.common].append((net, closed))
-                touching[net].append((pole.common, closed))
-    return touching
-
-
-def _spread(touching: _Touching, start: Mapping[int, int]) -> dict[int, int]:
-    """Rows in which each net is joined to a start, in that start's rows."""
-    live = dict.fromkeys(touching, 0)
-    live.update(start)
-    waiting = list(start)
-    while waiting:
-        net = waiting.pop()
-        here = live[net]
-        for other, closed in touching[net]:
-            more = here & closed & ~live[other]
-            if more:
-                live[other] |= more
-                waiting.append(other)
-    return live
