@@ -11,6 +11,7 @@ from collections.abc import Callable, Mapping, Sequence
 from contextlib import ExitStack
 from dataclasses import dataclass, replace
 from time import monotonic
+from types import MappingProxyType
 from typing import Literal
 
 from contactlogic.check import prove
@@ -28,7 +29,7 @@ from contactlogic.search.mesh import to_network
 from contactlogic.search.portfolio import Progress
 from contactlogic.truth import Target
 
-__all__ = ["EFFORT", "Forms", "Search", "finish", "synthesise", "wire"]
+__all__ = ["EFFORT", "Forms", "Search", "finish", "proved_rows", "synthesise", "wire"]
 
 Forms = Literal["ladder", "bridge", "both"]
 
@@ -351,19 +352,18 @@ def _task(job: Job, repeaters: bool) -> Task:
     )
 
 
-def _proved(
-    job: Job,
-    form: Form,
-    network: Network,
-    repeaters: Mapping[str, str],
-    at_least: int,
-    statuses: tuple[LoadStatus, ...],
-    said: tuple[str, ...] = (),
-) -> Design:
-    """The design of a network that passes its proof; `at_least` is what the objective counts."""
+def proved_rows(
+    job: Job, form: Form, network: Network, repeaters: Mapping[str, str] = MappingProxyType({})
+) -> int:
+    """Rows proved of a network that is to do what a job wants; a repeater has its relay's budget.
+
+    Raises:
+        ProofFailed: it does not.
+    """
     budgets = dict(job.limits.poles)
     for name, relay in repeaters.items():
-        budgets[name] = budgets[relay]
+        if relay in budgets:
+            budgets[name] = budgets[relay]
     proof = prove(
         network,
         job.targets,
@@ -375,6 +375,20 @@ def _proved(
     )
     if not proof.ok:
         raise ProofFailed(proof.explain())
+    return proof.rows
+
+
+def _proved(
+    job: Job,
+    form: Form,
+    network: Network,
+    repeaters: Mapping[str, str],
+    at_least: int,
+    statuses: tuple[LoadStatus, ...],
+    said: tuple[str, ...] = (),
+) -> Design:
+    """The design of a network that passes its proof; `at_least` is what the objective counts."""
+    rows = proved_rows(job, form, network, repeaters)
     poles = len(network.poles)
     contacts = sum(count.contacts for count in network.per_relay().values())
     notes = list(said)
@@ -390,7 +404,7 @@ def _proved(
         for name, relay in repeaters.items()
     ]
     bound = Bound(at_least, at_least == poles)
-    return Design(form, network, bound, proof.rows, statuses, tuple(notes))
+    return Design(form, network, bound, rows, statuses, tuple(notes))
 
 
 def _relays_that_matter(job: Job) -> int:

@@ -10,13 +10,12 @@ bought, and proved once more.  It is called the least only where no wiring can c
 
 from __future__ import annotations
 
-from collections.abc import Callable, Collection, Mapping, Sequence
+from collections.abc import Callable, Collection, Sequence
 from dataclasses import dataclass, replace
 from decimal import Decimal
 
-from contactlogic.check import prove
 from contactlogic.design import Bound, Design, Result
-from contactlogic.errors import PartsError, ProofFailed
+from contactlogic.errors import PartsError
 from contactlogic.job.model import Job
 from contactlogic.network import Network, Pole
 from contactlogic.purchase.buy import buy, coil_groups
@@ -25,7 +24,7 @@ from contactlogic.purchase.parts import Part, PartsList
 from contactlogic.purchase.prices import Prices, least_price, wired_apart
 from contactlogic.purchase.schedule import Drawer, Schedule, schedule_of
 from contactlogic.sequenced import SequencerResult
-from contactlogic.synthesis import EFFORT, Search
+from contactlogic.synthesis import EFFORT, Search, proved_rows
 
 __all__ = ["Cheapest", "Offer", "cheapest"]
 
@@ -296,7 +295,7 @@ def _kept(
             schedule.design,
             network=network,
             bound=Bound(bound, bound == len(network.poles)),
-            verified_rows=_proved(job, schedule.design, network, repeaters),
+            verified_rows=proved_rows(job, schedule.design.form, network, repeaters),
             notes=_notes(schedule),
         )
         designs.append(design)
@@ -333,23 +332,3 @@ def _notes(schedule: Schedule) -> tuple[str, ...]:
         for name, relay in schedule.repeaters.items()
     )
     return (*known, *(note for note in added if note not in known))
-
-
-def _proved(job: Job, design: Design, network: Network, repeaters: Mapping[str, str]) -> int:
-    """Rows proved of a design as it is bought."""
-    budgets = dict(job.limits.poles)
-    for name, relay in repeaters.items():
-        if relay in budgets:
-            budgets[name] = budgets[relay]
-    proof = prove(
-        network,
-        job.targets,
-        form=design.form,
-        isolated=job.isolated,
-        pole_limits=budgets,
-        separate=job.limits.contacts,
-        repeaters=repeaters,
-    )
-    if not proof.ok:
-        raise ProofFailed(proof.explain())
-    return proof.rows
