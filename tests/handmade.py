@@ -23,6 +23,23 @@ SLUICE_JOB = Job(
     file="sluice.toml",
 )
 
+SLUICE_TOML = """\
+title = "Sluice house"
+[table]
+columns = "UP DOWN FLOOD | LAMP HORN"
+rows = \"\"\"
+0 0 0 | 0 0
+1 0 0 | 1 0
+0 1 0 | 0 1
+0 0 1 | 1 0
+1 0 1 | 1 0
+0 1 1 | 1 -
+1 1 1 | 1 0
+\"\"\"
+unlisted = "free"
+"""
+"""The same job as a file, without its supply and what is known of its loads."""
+
 SLUICE_NETWORK = Network(
     relays=("UP", "DOWN", "FLOOD"),
     supply="L",

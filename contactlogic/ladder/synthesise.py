@@ -165,13 +165,13 @@ def _arranged(
     if open_plans and seconds > 0:
         todo = [plans[k] for k in open_plans]
         if max(sum(contact_count(b.tree) for b in plan.branches) for plan in todo) <= _SMALL:
-            found.update(zip(open_plans, _arrange_all(todo, rules, seed, seconds), strict=True))
-            return [found.get(k) for k in range(len(plans))]
-        try:
-            orders = run(_arrange_all, todo, rules, seed, 0.8 * seconds, seconds=seconds)
-            found.update(zip(open_plans, orders, strict=True))
-        except (ChildCrashed, ChildTimedOut):
-            pass
+            orders = _arrange_all(todo, rules, seed, seconds)
+        else:
+            try:
+                orders = run(_arrange_all, todo, rules, seed, 0.8 * seconds, seconds=seconds)
+            except (ChildCrashed, ChildTimedOut):
+                orders = [None] * len(todo)
+        found.update(zip(open_plans, orders, strict=True))
     return [found.get(k) for k in range(len(plans))]
 
 

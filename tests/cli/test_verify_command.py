@@ -8,27 +8,11 @@ from pathlib import Path
 from typing import Any
 
 import pytest
-from handmade import SLUICE_BOTH
+from handmade import SLUICE_BOTH, SLUICE_TOML
 from typer.testing import CliRunner, Result
 
 from contactlogic.cli.app import app
 from contactlogic.report.designfile import dumps
-
-JOB = """\
-title = "Sluice house"
-[table]
-columns = "UP DOWN FLOOD | LAMP HORN"
-rows = \"\"\"
-0 0 0 | 0 0
-1 0 0 | 1 0
-0 1 0 | 0 1
-0 0 1 | 1 0
-1 0 1 | 1 0
-0 1 1 | 1 -
-1 1 1 | 1 0
-\"\"\"
-unlisted = "free"
-"""
 
 LADDER, BRIDGE = (design.fingerprint for design in SLUICE_BOTH.designs)
 
@@ -37,7 +21,7 @@ LADDER, BRIDGE = (design.fingerprint for design in SLUICE_BOTH.designs)
 def here(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> Path:
     """A folder with a job and a file of two designs for it, neither from a search."""
     monkeypatch.chdir(tmp_path)
-    (tmp_path / "sluice.toml").write_text(JOB)
+    (tmp_path / "sluice.toml").write_text(SLUICE_TOML)
     (tmp_path / "design.json").write_text(dumps(SLUICE_BOTH))
     return tmp_path
 
@@ -116,7 +100,7 @@ def test_a_sneak_path_is_followed_through_the_other_load() -> None:
 @pytest.mark.usefixtures("here")
 def test_budgets_are_judged() -> None:
     job = Path("sluice.toml")
-    job.write_text(JOB + "[limits]\npoles = { DOWN = 1 }\n")
+    job.write_text(SLUICE_TOML + "[limits]\npoles = { DOWN = 1 }\n")
     ran = _verify("design.json", "sluice.toml")
     assert ran.exit_code == 1
     assert "DOWN" in ran.stdout.splitlines()[1]

@@ -14,7 +14,7 @@ from pathlib import Path
 
 import openpyxl
 import pytest
-from handmade import SLUICE_BOTH, SLUICE_JOB
+from handmade import SLUICE_BOTH, SLUICE_JOB, SLUICE_TOML
 from typer.testing import CliRunner, Result
 
 from contactlogic.cli.app import app
@@ -30,26 +30,16 @@ one make,1,A,24,16,1.80,8
 12 volts,2,C,12,5,0.10,
 """
 
-JOB = """\
-title = "Sluice house"
-[table]
-columns = "UP DOWN FLOOD | LAMP HORN"
-rows = \"\"\"
-0 0 0 | 0 0
-1 0 0 | 1 0
-0 1 0 | 0 1
-0 0 1 | 1 0
-1 0 1 | 1 0
-0 1 1 | 1 -
-1 1 1 | 1 0
-\"\"\"
-unlisted = "free"
+JOB = (
+    SLUICE_TOML
+    + """\
 [supply]
 coil_volts = 24
 [loads]
 LAMP = { amps = 5.5 }
 HORN = { amps = 0.6 }
 """
+)
 
 
 @pytest.fixture

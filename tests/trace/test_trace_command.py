@@ -6,28 +6,19 @@ import json
 from pathlib import Path
 
 import pytest
+from handmade import SLUICE_TOML
 from typer.testing import CliRunner, Result
 
 from contactlogic.cli.app import app
 
-JOB = """\
-title = "Sluice house"
-[table]
-columns = "UP DOWN FLOOD | LAMP HORN"
-rows = \"\"\"
-0 0 0 | 0 0
-1 0 0 | 1 0
-0 1 0 | 0 1
-0 0 1 | 1 0
-1 0 1 | 1 0
-0 1 1 | 1 -
-1 1 1 | 1 0
-\"\"\"
-unlisted = "free"
+JOB = (
+    SLUICE_TOML
+    + """\
 [supply]
 feed = "+24 V"
 return = "0 V"
 """
+)
 
 WIRES = """\
 from,to
